@@ -1,0 +1,9 @@
+/**
+ * Room `instrument`: what the spectrometer does to the electrons that reach it: energy scale, resolution,
+ * transmission, counting. Numbers in, numbers out; no transport.
+ *
+ * @module
+ */
+export { accelerationEv, kineticEnergyShiftEv } from "./energy_scale.ts";
+export { applyResponse, FWHM_PER_SIGMA, hemisphereResolutionEv, type ResponseMatrix, responseMatrix, windowEv } from "./resolution.ts";
+export { type Counting, drawCounts, expectedCounts, type ExpectedCounts } from "./counting.ts";

@@ -1,0 +1,8 @@
+/**
+ * Room `math`: special functions, interpolation and quadrature. Vectors and numbers only, no physics.
+ *
+ * @module
+ */
+export { erfc, erfcx, normalCdf, normalPdf } from "./erfc.ts";
+export { interpolateLinear } from "./interpolate.ts";
+export { gaussLegendre, type QuadratureRule } from "./quadrature.ts";

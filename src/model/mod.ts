@@ -1,0 +1,8 @@
+/**
+ * Room `model`: the forward model. A resolved scenario becomes an engine (tables for the histories), and a tally of
+ * histories becomes the spectrum that the instrument would record.
+ *
+ * @module
+ */
+export { type Engine, type EngineData, engineData, engineFrom } from "./engine.ts";
+export { countSpectrum, expectedSpectrum, type ExpectedSpectrum } from "./expected.ts";

@@ -1,0 +1,47 @@
+/**
+ * Worker thread: receives an engine once, then runs the batches it is told to and posts each tally back.
+ *
+ * @module
+ */
+import { parentPort } from "node:worker_threads";
+import { type Engine, type EngineData, engineFrom } from "../model/mod.ts";
+import { type BatchTally, emptyBatchTally } from "../transport/mod.ts";
+
+/** What a worker is told. */
+export type ToWorker =
+  | { readonly kind: "setup"; readonly data: EngineData; readonly seed: number; readonly stop: Int32Array }
+  | { readonly kind: "run"; readonly from: number; readonly to: number };
+
+/** What a worker answers. */
+export type FromWorker =
+  | { readonly kind: "idle" }
+  | { readonly kind: "batch"; readonly batch: number; readonly tally: BatchTally }
+  | { readonly kind: "failed"; readonly message: string };
+
+let engine: Engine | undefined;
+let seed = 0;
+let stop: Int32Array | undefined;
+
+function post(message: FromWorker, transfer: ArrayBuffer[] = []): void {
+  parentPort?.postMessage(message, transfer);
+}
+
+parentPort?.on("message", (message: ToWorker) => {
+  try {
+    if (message.kind === "setup") {
+      engine = engineFrom(message.data);
+      seed = message.seed;
+      stop = message.stop;
+    } else if (engine?.run && stop) {
+      for (let batch = message.from; batch < message.to && Atomics.load(stop, 0) === 0; batch++) {
+        const tally = emptyBatchTally(engine.tables.grid.count);
+        engine.run(seed, batch, tally);
+        const buffers = Object.values(tally).map((array: Float64Array) => array.buffer as ArrayBuffer);
+        post({ kind: "batch", batch, tally }, buffers);
+      }
+    }
+    post({ kind: "idle" });
+  } catch (error) {
+    post({ kind: "failed", message: error instanceof Error ? error.message : String(error) });
+  }
+});

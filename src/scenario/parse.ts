@@ -1,0 +1,281 @@
+import { getNodeValue, type ParseError, parseTree, printParseErrorCode, stripComments } from "jsonc-parser";
+import { z } from "zod";
+import { cannot, InputError, type Problem, suggest } from "../base/mod.ts";
+import { applyOverrides } from "./overrides.ts";
+import type { Scenario } from "./types.ts";
+
+const energy = (low: number, high: number) => z.number().min(low).max(high);
+
+const sample = z.strictObject({
+  material: z.string().min(1),
+  face: z.string().min(1).default("polycrystalline"),
+  temperatureK: z.number().min(0).max(3000).default(300),
+  workFunctionEv: energy(0.5, 10).nullable().default(null),
+  barrier: z.enum(["classical", "quantum"]).default("classical"),
+  transportMeanFreePathNm: z.number().positive().max(1e6).nullable().default(null),
+  densityOfStatesFile: z.string().min(1).nullable().default(null),
+  meanFreePathFile: z.string().min(1).nullable().default(null),
+});
+
+const photonFluxPerS = z.number().positive().max(1e20).default(1e10);
+
+const light = z.discriminatedUnion("kind", [
+  z.strictObject({
+    kind: z.literal("lamp"),
+    lamp: z.string().min(1),
+    satellites: z.boolean().default(true),
+    photonFluxPerS,
+  }),
+  z.strictObject({
+    kind: z.literal("band"),
+    centerEv: energy(1, 60),
+    fwhmEv: energy(0, 5).default(0),
+    photonFluxPerS,
+  }),
+]);
+
+const geometry = z.strictObject({
+  incidenceAngleDeg: z.number().min(0).max(89).default(45),
+  emissionAngleDeg: z.number().min(0).max(89).default(0),
+});
+
+const resolution = z.discriminatedUnion("kind", [
+  z.strictObject({ kind: z.literal("fwhm"), fwhmEv: energy(0.0005, 5) }),
+  z.strictObject({
+    kind: z.literal("hemisphere"),
+    passEnergyEv: energy(0.1, 500),
+    slitWidthMm: z.number().positive().max(50),
+    meanRadiusMm: z.number().min(10).max(1000),
+    slitHalfAngleDeg: z.number().min(0).max(20),
+  }),
+]);
+
+const analyzer = z.strictObject({
+  workFunctionEv: energy(0.5, 10),
+  acceptanceHalfAngleDeg: z.number().positive().max(90),
+  resolution,
+  transmissionExponent: z.number().min(0).max(2).default(0),
+  detectionFraction: z.number().positive().max(1).default(1),
+});
+
+const acquisition = z.strictObject({
+  startEv: energy(-20, 200),
+  endEv: energy(-20, 200),
+  stepEv: energy(0.0001, 5),
+  dwellS: z.number().positive().max(1e6),
+  sweeps: z.int().min(1).max(1e6).default(1),
+  darkRateCountsPerS: z.number().min(0).max(1e9).default(0),
+  deadTimeS: z.number().min(0).max(1e-3).default(0),
+});
+
+const simulation = z.strictObject({
+  histories: z.int().min(8192).max(1e12).default(2_000_000),
+  seed: z.int().min(0).default(1),
+  energyStepEv: energy(0.002, 0.1).default(0.02),
+});
+
+const scenario = z.strictObject({
+  $schema: z.string().optional(),
+  title: z.string().min(1).max(200),
+  note: z.string().max(10_000).default(""),
+  sample,
+  light,
+  geometry: geometry.default(() => geometry.parse({})),
+  analyzer,
+  biasV: z.number().min(-100).max(10).default(0),
+  acquisition,
+  simulation: simulation.default(() => simulation.parse({})),
+});
+
+/**
+ * JSON Schema of scenario files, for editors and for `scenarios/scenario.schema.json`.
+ *
+ * @returns A JSON Schema (draft 2020-12) object.
+ */
+export function scenarioJsonSchema(): Record<string, unknown> {
+  return { title: "Twoedge scenario", ...z.toJSONSchema(scenario, { io: "input" }) };
+}
+
+/**
+ * Reads a scenario: JSON in which comments and trailing commas are allowed.
+ *
+ * Every problem is reported at once, each with a JSON pointer, the rule, the value, and the nearest known word.
+ *
+ * @param text Contents of the file.
+ * @param fileName Name for messages.
+ * @param overrides `PATH=VALUE` texts, see {@link applyOverrides}. Default: none.
+ * @returns The scenario with defaults filled in.
+ * @throws {InputError} If the text is not JSON or breaks a rule.
+ */
+export function parseScenario(text: string, fileName: string, overrides: readonly string[] = []): Scenario {
+  const errors: ParseError[] = [];
+  const tree = parseTree(text, errors, { allowTrailingComma: true, allowEmptyContent: false });
+  if (errors.length > 0 || tree === undefined) {
+    const { error, offset } = errors[0] ?? { error: 0, offset: 0 };
+    const line = text.slice(0, offset).split("\n").length;
+    const where = text.slice(offset, offset + 20).split("\n")[0];
+    throw new InputError([{
+      place: `${fileName}:${line}`,
+      message: cannot(
+        "read scenario",
+        `the file must be JSON (${stripComments(text).trim() === "" ? "it is empty" : printParseErrorCode(error)})`,
+        where,
+      ),
+    }]);
+  }
+  const duplicates = duplicateKeys(tree);
+  if (duplicates.length > 0) throw new InputError(duplicates);
+  const data = applyOverrides(getNodeValue(tree), overrides);
+  const checked = scenario.safeParse(data, { reportInput: true });
+  const problems = checked.success ? crossChecks(checked.data) : checked.error.issues.flatMap(toProblems);
+  if (problems.length > 0) throw new InputError(problems);
+  return checked.data as Scenario;
+}
+
+type Node = NonNullable<ReturnType<typeof parseTree>>;
+
+function duplicateKeys(node: Node, pointer = ""): Problem[] {
+  const problems: Problem[] = [];
+  const seen = new Set<string>();
+  for (const child of node.children ?? []) {
+    if (child.type !== "property" || child.children === undefined) {
+      problems.push(...duplicateKeys(child, pointer));
+      continue;
+    }
+    const [key, value] = child.children;
+    const place = `${pointer}/${key.value}`;
+    if (seen.has(key.value)) {
+      problems.push({ place, message: cannot("read scenario", "each key may be given once", String(key.value)) });
+    }
+    seen.add(key.value);
+    if (value) problems.push(...duplicateKeys(value, place));
+  }
+  return problems;
+}
+
+function crossChecks(data: Scenario): Problem[] {
+  const problems: Problem[] = [];
+  const { startEv, endEv, stepEv } = data.acquisition;
+  if (!(endEv > startEv)) {
+    problems.push({
+      place: "/acquisition/endEv",
+      message: cannot("use scenario", `endEv must be > startEv (${startEv} eV)`, `${endEv} eV`),
+    });
+  } else if ((endEv - startEv) / stepEv > 100_000 || (endEv - startEv) / stepEv < 10) {
+    problems.push({
+      place: "/acquisition/stepEv",
+      message: cannot(
+        "use scenario",
+        `the window of ${endEv - startEv} eV must hold 10..100000 channels`,
+        `${stepEv} eV`,
+      ),
+    });
+  }
+  return problems;
+}
+
+const UNITS: readonly (readonly [RegExp, string])[] = [
+  [/CountsPerS$/, "counts/s"],
+  [/PerS$/, "1/s"],
+  [/Ev$/, "eV"],
+  [/K$/, "K"],
+  [/Nm$/, "nm"],
+  [/Mm$/, "mm"],
+  [/Deg$/, "degrees"],
+  [/S$/, "s"],
+  [/V$/, "V"],
+];
+
+function toProblems(issue: z.core.$ZodIssue): Problem[] {
+  const pointer = issue.path.map((key) => `/${String(key).replaceAll("~", "~0").replaceAll("/", "~1")}`).join("");
+  const key = String(issue.path.at(-1) ?? "scenario");
+  const unit = UNITS.find(([pattern]) => pattern.test(key))?.[1];
+  const withUnit = (value: unknown): string => (unit ? `${value} ${unit}` : String(value));
+  const say = (rule: string, value: unknown): Problem[] => [{
+    place: pointer || "/",
+    message: cannot("read scenario", rule, typeof value === "object" ? JSON.stringify(value) : value),
+  }];
+  const input = issue.input;
+  switch (issue.code) {
+    case "unrecognized_keys": {
+      const known = knownKeys(issue.path, input);
+      return issue.keys.map((unknown) => {
+        const near = suggest(unknown, known);
+        const hint = near ? ` (did you mean ${near}?)` : ` (known here: ${known.join(", ")})`;
+        return {
+          place: `${pointer}/${unknown}`,
+          message: cannot("read scenario", `every key must be known${hint}`, unknown),
+        };
+      });
+    }
+    case "invalid_type":
+      return input === undefined
+        ? say(`${key} must be given`, "nothing")
+        : say(`${key} must be ${article(issue.expected)}${unit ? ` in ${unit}` : ""}`, input);
+    case "too_small":
+      return say(
+        `${key} must be ${issue.inclusive ? ">=" : ">"} ${withUnit(issue.minimum)}${
+          issue.origin === "string" ? " characters" : ""
+        }`,
+        input,
+      );
+    case "too_big":
+      return say(
+        `${key} must be <= ${withUnit(issue.maximum)}${issue.origin === "string" ? " characters" : ""}`,
+        input,
+      );
+    case "invalid_value": {
+      const choices = issue.values.map(String);
+      const near = typeof input === "string" ? suggest(input, choices) : undefined;
+      return say(`${key} must be one of ${choices.join(", ")}${near ? ` (did you mean ${near}?)` : ""}`, input);
+    }
+    case "invalid_union":
+      return say(`${key} must be ${key === "kind" ? `one of ${kindsAt(issue.path).join(", ")}` : "known"}`, input);
+    default:
+      return say(`${key} must be valid (${issue.message})`, input);
+  }
+}
+
+function article(expected: string): string {
+  return expected === "int" ? "a whole number" : expected === "object" ? "an object" : `a ${expected}`;
+}
+
+type AnySchema = z.core.$ZodType;
+
+/** The schema at a path; a union is narrowed by the `kind` of the input where there is one. */
+function schemaAt(path: readonly PropertyKey[]): AnySchema | undefined {
+  let schema: AnySchema | undefined = scenario;
+  for (const key of path) {
+    schema = unwrap(schema);
+    if (schema instanceof z.ZodObject) schema = schema.shape[String(key)] as AnySchema | undefined;
+    else return undefined;
+  }
+  return unwrap(schema);
+}
+
+function unwrap(schema: AnySchema | undefined): AnySchema | undefined {
+  let inner = schema;
+  while (inner instanceof z.ZodDefault || inner instanceof z.ZodNullable || inner instanceof z.ZodOptional) {
+    inner = inner.unwrap() as AnySchema;
+  }
+  return inner;
+}
+
+function knownKeys(path: readonly PropertyKey[], input: unknown): string[] {
+  const schema = schemaAt(path);
+  if (schema instanceof z.ZodObject) return Object.keys(schema.shape);
+  if (!(schema instanceof z.ZodDiscriminatedUnion)) return [];
+  const kind = (input as { kind?: unknown } | undefined)?.kind;
+  const options = schema.options as z.ZodObject[];
+  const chosen = options.filter((option) => option.safeParse({ kind }).error?.issues.every((i) => i.path[0] !== "kind"));
+  return [...new Set((chosen.length > 0 ? chosen : options).flatMap((option) => Object.keys(option.shape)))];
+}
+
+function kindsAt(path: readonly PropertyKey[]): string[] {
+  const schema = schemaAt(path.slice(0, -1));
+  if (!(schema instanceof z.ZodDiscriminatedUnion)) return [];
+  return (schema.options as z.ZodObject[]).flatMap((option) => {
+    const kind = option.shape.kind;
+    return kind instanceof z.ZodLiteral ? [...kind.values].map(String) : [];
+  });
+}

@@ -1,0 +1,124 @@
+/** The sample: a clean, flat, homogeneous metal. */
+export interface SampleSettings {
+  /** Material by its built-in name, such as `Au`. */
+  readonly material: string;
+  /** Face whose tabulated work function is used. Default: `polycrystalline`. */
+  readonly face: string;
+  /** Temperature, K, 0..3000. Default: 300 K. */
+  readonly temperatureK: number;
+  /** Work function, eV, 0.5..10, instead of the tabulated one; null takes the table. Default: null. */
+  readonly workFunctionEv: number | null;
+  /** Transmission of the surface barrier. Default: `classical` (1 above the barrier). */
+  readonly barrier: "classical" | "quantum";
+  /** Transport mean free path of elastic events, nm, > 0; null for none. Default: null. */
+  readonly transportMeanFreePathNm: number | null;
+  /** CSV file with columns `energy_ev,states_per_ev` (energy from the Fermi level), beside the scenario. Default: null. */
+  readonly densityOfStatesFile: string | null;
+  /** CSV file with columns `energy_ev,length_nm` (energy above the Fermi level), beside the scenario. Default: null. */
+  readonly meanFreePathFile: string | null;
+}
+
+/** The light that reaches the analyzed spot. */
+export type LightSettings =
+  | {
+    /** A discharge lamp. */
+    readonly kind: "lamp";
+    /** Lamp by its built-in name, such as `He I`. */
+    readonly lamp: string;
+    /** `true` keeps the lamp's weaker lines, `false` only the strongest one. Default: true. */
+    readonly satellites: boolean;
+    /** Photons per second on the analyzed spot, > 0. Default: 1e10. */
+    readonly photonFluxPerS: number;
+  }
+  | {
+    /** A monochromator band. */
+    readonly kind: "band";
+    /** Mean photon energy, eV, 1..60. */
+    readonly centerEv: number;
+    /** Full width at half maximum of the Gaussian band, eV, 0..5. Default: 0 eV. */
+    readonly fwhmEv: number;
+    /** Photons per second on the analyzed spot, > 0. Default: 1e10. */
+    readonly photonFluxPerS: number;
+  };
+
+/** Directions. */
+export interface GeometrySettings {
+  /** Angle of the light from the surface normal, degrees, 0..89. Default: 45 degrees. */
+  readonly incidenceAngleDeg: number;
+  /** Angle of the analyzer axis from the surface normal, degrees, 0..89. Default: 0 degrees. */
+  readonly emissionAngleDeg: number;
+}
+
+/** The electron analyzer. */
+export interface AnalyzerSettings {
+  /** Work function of the analyzer, eV, 0.5..10. */
+  readonly workFunctionEv: number;
+  /** Half-angle of the acceptance cone, degrees, > 0..90. */
+  readonly acceptanceHalfAngleDeg: number;
+  /** Energy resolution: given, or that of a hemisphere at constant pass energy. */
+  readonly resolution:
+    | { readonly kind: "fwhm"; readonly fwhmEv: number }
+    | {
+      readonly kind: "hemisphere";
+      readonly passEnergyEv: number;
+      readonly slitWidthMm: number;
+      readonly meanRadiusMm: number;
+      readonly slitHalfAngleDeg: number;
+    };
+  /** Exponent n of the transmission, proportional to E^-n, 0..2; 1 at the Fermi edge. Default: 0. */
+  readonly transmissionExponent: number;
+  /** Share of arriving electrons that is counted, > 0..1. Default: 1. */
+  readonly detectionFraction: number;
+}
+
+/** What is measured and for how long. */
+export interface AcquisitionSettings {
+  /** First channel, kinetic energy as the analyzer records it, eV. */
+  readonly startEv: number;
+  /** Last channel, eV. */
+  readonly endEv: number;
+  /** Channel step, eV, > 0. */
+  readonly stepEv: number;
+  /** Time per channel and sweep, s, > 0. */
+  readonly dwellS: number;
+  /** Sweeps, a whole number >= 1. Default: 1. */
+  readonly sweeps: number;
+  /** Count rate without light, counts/s, >= 0. Default: 0 counts/s. */
+  readonly darkRateCountsPerS: number;
+  /** Dead time of a non-paralyzable counter, s, 0..1e-3. Default: 0 s. */
+  readonly deadTimeS: number;
+}
+
+/** How the simulation is run. */
+export interface SimulationSettings {
+  /** Photons followed, rounded up to whole batches of 4096, 8192..1e12. Default: 2000000. */
+  readonly histories: number;
+  /** Seed of all random numbers, a whole number 0..2^53 - 1. Default: 1. */
+  readonly seed: number;
+  /** Step of the energy grid of the transport, eV, 0.002..0.1. Default: 0.02 eV. */
+  readonly energyStepEv: number;
+}
+
+/** A simulation as the user writes it, with all defaults filled in. */
+export interface Scenario {
+  /** Path of the schema file, for editors. */
+  readonly $schema?: string | undefined;
+  /** What this scenario is, one line. */
+  readonly title: string;
+  /** Anything to remember, such as where the numbers come from. Default: empty. */
+  readonly note: string;
+  /** The sample. */
+  readonly sample: SampleSettings;
+  /** The light. */
+  readonly light: LightSettings;
+  /** Directions. */
+  readonly geometry: GeometrySettings;
+  /** The analyzer. */
+  readonly analyzer: AnalyzerSettings;
+  /** Sample bias, V, -100..10; negative accelerates electrons toward the analyzer. Default: 0 V. */
+  readonly biasV: number;
+  /** What is measured. */
+  readonly acquisition: AcquisitionSettings;
+  /** How it is run. */
+  readonly simulation: SimulationSettings;
+}

@@ -1,0 +1,7 @@
+/**
+ * Room `spectrum`: shapes of the two edges of a photoemission spectrum after a Gaussian response.
+ *
+ * @module
+ */
+export { broadenedFermiEdge, type FermiEdgeShape } from "./fermi_edge.ts";
+export { broadenedHinge, broadenedRampStep, broadenedTopStep } from "./steps.ts";

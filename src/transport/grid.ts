@@ -1,0 +1,38 @@
+/**
+ * Uniform grid of electron energies above the Fermi level: bin k covers [k, k + 1) steps, its center is k + 1/2 steps.
+ *
+ * Energy transfers are whole steps, so energy is conserved exactly in every pair event.
+ */
+export interface EnergyGrid {
+  /** Width of a bin, eV. */
+  readonly stepEv: number;
+  /** Number of bins from the Fermi level up. */
+  readonly count: number;
+  /** First bin that reaches above the vacuum level; electrons below it never come out and are dropped. */
+  readonly vacuumBin: number;
+  /** Bins below the Fermi level (or above, for holes) that thermal smearing reaches. */
+  readonly thermalBins: number;
+}
+
+/** Thermal tails are followed to exp(-16), 1e-7 of the states. */
+const THERMAL_REACH = 16;
+
+/**
+ * Grid that holds every electron a photon of the given energy can make.
+ *
+ * @param stepEv Width of a bin, eV, > 0.
+ * @param limits Highest photon energy and work function, eV, and thermal energy kT, eV, >= 0.
+ * @returns The grid; without room for an electron above the vacuum level `vacuumBin >= count`.
+ */
+export function energyGrid(
+  stepEv: number,
+  limits: { readonly photonEnergyEv: number; readonly workFunctionEv: number; readonly thermalEnergyEv: number },
+): EnergyGrid {
+  const thermalBins = Math.ceil((THERMAL_REACH * limits.thermalEnergyEv) / stepEv);
+  return {
+    stepEv,
+    count: Math.ceil(limits.photonEnergyEv / stepEv) + thermalBins + 1,
+    vacuumBin: Math.floor(limits.workFunctionEv / stepEv + 1e-9),
+    thermalBins,
+  };
+}

@@ -1,0 +1,26 @@
+/**
+ * Room `transport`: electrons between the photon and the vacuum. Pure: no files, no clock, no workers.
+ *
+ * `pair_tables.ts` holds the physics of electron-electron scattering as sampling tables, `excitation.ts` the first
+ * step (where and at which energy photoelectrons start), `detection.ts` the last step (probability of reaching the
+ * analyzer), `kernel.ts` the histories, `tally.ts` the sums and their standard errors.
+ *
+ * @module
+ */
+export { type EnergyGrid, energyGrid } from "./grid.ts";
+export { excitationWeights, fermiOccupation } from "./excitation.ts";
+export { type MeanFreePath, type PairTables, pairTables, type PairTablesInput } from "./pair_tables.ts";
+export { acceptedShare, barrierTransmission, type DetectionInput, detectionTable, type DetectionTable } from "./detection.ts";
+export {
+  type BatchTally,
+  DEPTH_CELLS_PER_PATH,
+  directYield,
+  emptyBatchTally,
+  HISTORIES_PER_BATCH,
+  type Histories,
+  historyRunner,
+  type PhotonSource,
+  photonSource,
+  type PhotonSourceInput,
+} from "./kernel.ts";
+export { type Tally, TallyAccumulator } from "./tally.ts";
