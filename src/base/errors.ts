@@ -39,7 +39,9 @@ export class InputError extends SyntaxError {
  */
 export function cannot(action: string, rule: string, value: unknown): string {
   const shown = typeof value === "string" ? JSON.stringify(value) : String(value);
-  return `Cannot ${action} as ${rule}: current value is ${shown.length > 80 ? shown.slice(0, 77) + "..." : shown}`;
+  return `Cannot ${action} as ${rule}: current value is ${
+    shown.length > 80 ? shown.slice(0, 77) + "..." : shown
+  }`;
 }
 
 /**

@@ -38,7 +38,13 @@ function columnPair(text: string): readonly [string, string] {
 }
 
 const text = (value: string): string => value;
-const outFlag = { kind: "parsed", parse: text, brief: "Folder to write into", placeholder: "DIR", optional: true } as const;
+const outFlag = {
+  kind: "parsed",
+  parse: text,
+  brief: "Folder to write into",
+  placeholder: "DIR",
+  optional: true,
+} as const;
 const jsonFlag = {
   kind: "boolean",
   brief: "Print one JSON object on standard output and nothing else",
@@ -86,8 +92,20 @@ const simulateCommand = buildCommand({
     positional: { kind: "tuple", parameters: [scenarioArgument] },
     flags: {
       out: { ...outFlag, brief: "Folder to write into (default: out/ and the scenario's name)" },
-      seed: { kind: "parsed", parse: numberParser, brief: "Seed of all random numbers", placeholder: "N", optional: true },
-      histories: { kind: "parsed", parse: numberParser, brief: "Photons to follow", placeholder: "N", optional: true },
+      seed: {
+        kind: "parsed",
+        parse: numberParser,
+        brief: "Seed of all random numbers",
+        placeholder: "N",
+        optional: true,
+      },
+      histories: {
+        kind: "parsed",
+        parse: numberParser,
+        brief: "Photons to follow",
+        placeholder: "N",
+        optional: true,
+      },
       workers: workersFlag,
       set: setFlag,
       json: jsonFlag,
@@ -111,9 +129,13 @@ const simulateCommand = buildCommand({
     this.process.stdout.write([
       `${result.title}: ${result.histories} histories, scenario ${result.scenarioHash}`,
       `  work function put in       ${result.truth.workFunctionEv.toFixed(3)} eV`,
-      `  cutoff / Fermi edge        ${result.truth.cutoffEv.toFixed(3)} / ${result.truth.fermiEdgeEv.toFixed(3)} eV as recorded`,
+      `  cutoff / Fermi edge        ${result.truth.cutoffEv.toFixed(3)} / ${
+        result.truth.fermiEdgeEv.toFixed(3)
+      } eV as recorded`,
       `  highest expected counts    ${result.peakCounts.toPrecision(4)} in a channel`,
-      `  Monte Carlo standard error at most ${(100 * result.worstRelativeStandardError).toPrecision(2)} % above a tenth of that`,
+      `  Monte Carlo standard error at most ${
+        (100 * result.worstRelativeStandardError).toPrecision(2)
+      } % above a tenth of that`,
       `Wrote ${written.join(", ")}`,
       "",
     ].join("\n"));
@@ -227,7 +249,9 @@ function fitStatements(flags: FitFlags): FitStatements {
     acceptanceHalfAngleDeg: flags.acceptance,
     fermiLevelEv: flags.fermiLevel,
   };
-  return Object.fromEntries(Object.entries(defined).filter(([, value]) => value !== undefined)) as FitStatements;
+  return Object.fromEntries(
+    Object.entries(defined).filter(([, value]) => value !== undefined),
+  ) as FitStatements;
 }
 
 const validateCommand = buildCommand({
@@ -242,7 +266,8 @@ const validateCommand = buildCommand({
     this.process.stdout.write(
       flags.json
         ? `${JSON.stringify({ valid: true, scenarioHash: hash, warnings }, null, 2)}\n`
-        : [`${path} is valid, scenario ${hash}`, ...warnings.map((warning) => `Warning: ${warning}`), ""].join("\n"),
+        : [`${path} is valid, scenario ${hash}`, ...warnings.map((warning) => `Warning: ${warning}`), ""]
+          .join("\n"),
     );
   },
 });
@@ -263,7 +288,9 @@ const materialsCommand = buildCommand({
     });
     const lines = name === undefined
       ? values.map((entry) => `${entry.id.padEnd(4)}${entry.name}`)
-      : values[0].values.map((row) => `${row.quantity}: ${row.value} ${row.unit} [${row.confidence}] ${row.source}`);
+      : values[0].values.map((row) =>
+        `${row.quantity}: ${row.value} ${row.unit} [${row.confidence}] ${row.source}`
+      );
     this.process.stdout.write(flags.json ? `${JSON.stringify(values, null, 2)}\n` : `${lines.join("\n")}\n`);
   },
 });

@@ -76,7 +76,10 @@ function meritRatios(run: Tally): { median: number; least: number } {
   const ratios: number[] = [];
   mean.forEach((expected, k) => {
     const scattered = expected - engine.direct[k];
-    const squares = run.groups.reduce((sum, group) => sum + (group.forced[k] / group.histories - scattered) ** 2, 0);
+    const squares = run.groups.reduce(
+      (sum, group) => sum + (group.forced[k] / group.histories - scattered) ** 2,
+      0,
+    );
     const variance = squares / (groups - 1) / groups;
     if (expected > 0.01 * highest && variance > 0) ratios.push(expected / run.histories / variance);
   });

@@ -4,8 +4,8 @@ import { nearestLine } from "../data/mod.ts";
 import {
   type EdgeRegion,
   type FittedEdge,
-  measureWorkFunction,
   type MeasureOptions,
+  measureWorkFunction,
   type WorkFunctionResult,
 } from "../edges/mod.ts";
 import { readSpectrumFile, type SpectrumRegion } from "../formats/mod.ts";
@@ -112,7 +112,9 @@ export function fitText(result: WorkFunctionResult): string {
     ...row("Fermi edge", result.fermiEdgeEv),
     "Used:",
     ...inputs.regions.map((use) =>
-      `  ${use.file}${use.region ? ` region ${use.region}` : ""}, ${use.rangeEv[0]} to ${use.rangeEv[1]} eV: ${use.use}`
+      `  ${use.file}${use.region ? ` region ${use.region}` : ""}, ${use.rangeEv[0]} to ${
+        use.rangeEv[1]
+      } eV: ${use.use}`
     ),
     `  photon energy ${inputs.photonEnergyEv.value} eV, ${inputs.photonEnergyEv.from}`,
     `  bias ${inputs.biasV.value === null ? "" : `${inputs.biasV.value} V, `}${inputs.biasV.from}`,
@@ -179,7 +181,9 @@ export function fitSvg({ regions, result }: FitRun, title: string): Promise<stri
         `h\u03bd = ${inputs.photonEnergyEv.value} eV`,
       ].join(", "),
     ],
-    axisTitle: inputs.axis.kind === "kinetic" ? "Kinetic energy on the axis of the file / eV" : "h\u03bd \u2212 binding energy / eV",
+    axisTitle: inputs.axis.kind === "kinetic"
+      ? "Kinetic energy on the axis of the file / eV"
+      : "h\u03bd \u2212 binding energy / eV",
     measured: used.map((region) => ({ label: used.length > 1 ? region.label : "", curve: region })),
     expected: null,
     edges: [

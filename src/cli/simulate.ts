@@ -1,6 +1,6 @@
 import { VERSION } from "../base/mod.ts";
 import { decodeText, readSpectrumCsv, writeSpectrumCsv } from "../formats/mod.ts";
-import { countSpectrum, engineData, expectedSpectrum, type ExpectedSpectrum } from "../model/mod.ts";
+import { countSpectrum, engineData, type ExpectedSpectrum, expectedSpectrum } from "../model/mod.ts";
 import { renderSvg, spectrumFigure } from "../report/mod.ts";
 import { batchesFor, runHistories } from "../run/mod.ts";
 import {
@@ -211,7 +211,9 @@ export function spectrumSvg({ resolved, expected, counts, result }: Simulation):
     title: resolved.title,
     subtitle: [
       `simulated, h\u03bd = ${resolved.photonEnergyEv.toFixed(3)} eV, bias ${resolved.biasV} V, ` +
-      `W = ${resolved.workFunctionEv.toFixed(3)} eV, ${result.histories.toExponential(2)} histories, seed ${resolved.seed}`,
+      `W = ${resolved.workFunctionEv.toFixed(3)} eV, ${
+        result.histories.toExponential(2)
+      } histories, seed ${resolved.seed}`,
     ],
     axisTitle: "Kinetic energy as recorded / eV",
     measured: [{ label: "", curve: { energiesEv, counts } }],

@@ -1,5 +1,11 @@
 import type { Estimate } from "../base/mod.ts";
-import { type FitParameter, minimizePoisson, type PoissonFit, residualTests, type ResidualTests } from "../fit/mod.ts";
+import {
+  type FitParameter,
+  minimizePoisson,
+  type PoissonFit,
+  type ResidualTests,
+  residualTests,
+} from "../fit/mod.ts";
 import { broadenedHinge, broadenedRampStep, broadenedTopStep } from "../spectrum/mod.ts";
 import { type EdgeCandidate, meanCounts } from "./locate.ts";
 
@@ -76,10 +82,19 @@ export function fitCutoff(
 
   const stepEv = (window[window.length - 1] - window[0]) / (window.length - 1);
   const base = Math.max(0.1, meanCounts(window, data, low, candidate.energyEv - 2 * width) || 0.1);
-  const top = Math.max(1, meanCounts(window, data, candidate.energyEv + width, candidate.energyEv + 2 * width));
+  const top = Math.max(
+    1,
+    meanCounts(window, data, candidate.energyEv + width, candidate.energyEv + 2 * width),
+  );
   const sigma = Math.max(0.35 * width, 0.5 * stepEv);
   const parameters: FitParameter[] = [
-    { name: "position", start: candidate.energyEv, lower: window[0], upper: window[window.length - 1], scale: sigma },
+    {
+      name: "position",
+      start: candidate.energyEv,
+      lower: window[0],
+      upper: window[window.length - 1],
+      scale: sigma,
+    },
     { name: "sigma", start: sigma, lower: 0.15 * stepEv, upper: 2, scale: sigma },
     { name: "flat", start: top, scale: top },
     { name: "fast", start: 0.1 * top, scale: top },
@@ -97,7 +112,8 @@ export function fitCutoff(
       const fastTop = broadenedRampStep(x, sigmaEv, ramp, FAST_DECAY_EV, 1);
       const slowTop = broadenedRampStep(x, sigmaEv, ramp, SLOW_DECAY_EV, 1);
       const flatTop = broadenedRampStep(x, sigmaEv, ramp, 1, 0);
-      out[i] = flat * flatTop + fast * fastTop + slow * slowTop + baseCounts + slope * broadenedHinge(-x, sigmaEv);
+      out[i] = flat * flatTop + fast * fastTop + slow * slowTop + baseCounts +
+        slope * broadenedHinge(-x, sigmaEv);
       if (foot !== 0) out[i] += foot * broadenedTopStep(-x, sigmaEv, footEv);
     }
   };

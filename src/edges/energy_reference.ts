@@ -46,11 +46,20 @@ const MOST_WORK_FUNCTION_EV = 9;
  * @param onsetEv Highest position at which electrons of the main line set in, eV, or null if unknown.
  * @returns Possible references; several mean that the file does not settle it.
  */
-export function energyReferences(axis: AxisKnowledge, cutoffEv: number, onsetEv: number | null): EnergyReference[] {
+export function energyReferences(
+  axis: AxisKnowledge,
+  cutoffEv: number,
+  onsetEv: number | null,
+): EnergyReference[] {
   const { photonEnergyEv } = axis;
   const workFunction = axis.analyzerWorkFunctionEv === null ? null : Math.abs(axis.analyzerWorkFunctionEv);
   if (axis.fermiLevelEv !== null) {
-    return [{ fermiLevelEv: axis.fermiLevelEv, toleranceEv: KNOWN_EV, usable: true, how: "given by the user" }];
+    return [{
+      fermiLevelEv: axis.fermiLevelEv,
+      toleranceEv: KNOWN_EV,
+      usable: true,
+      how: "given by the user",
+    }];
   }
   if (axis.fromBinding) {
     return [{
@@ -74,7 +83,8 @@ export function energyReferences(axis: AxisKnowledge, cutoffEv: number, onsetEv:
     fermiLevelEv: photonEnergyEv,
     toleranceEv: KNOWN_EV,
     usable: true,
-    how: "kinetic energies with bias and analyzer work function taken off: the Fermi level is at the photon energy",
+    how:
+      "kinetic energies with bias and analyzer work function taken off: the Fermi level is at the photon energy",
   }];
   if (workFunction !== null) {
     readings.push({
@@ -88,7 +98,9 @@ export function energyReferences(axis: AxisKnowledge, cutoffEv: number, onsetEv:
         fermiLevelEv: photonEnergyEv - workFunction + Math.abs(axis.biasV),
         toleranceEv: KNOWN_EV,
         usable: true,
-        how: `kinetic energies as recorded at ${Math.abs(axis.biasV)} V accelerating bias, analyzer work function ${workFunction} eV`,
+        how: `kinetic energies as recorded at ${
+          Math.abs(axis.biasV)
+        } V accelerating bias, analyzer work function ${workFunction} eV`,
       });
     }
   }

@@ -68,10 +68,21 @@ export function fitFermiEdge(
   const floor = meanCounts(window, data, high - BEYOND_SATELLITE_EV, high);
   const parameters: FitParameter[] = [
     { name: "position", start: center, lower: window[0], upper: window[window.length - 1], scale: 0.05 },
-    { name: "sigma", start: options.startSigmaEv, lower: 0.15 * stepEv, upper: 1, scale: options.startSigmaEv },
+    {
+      name: "sigma",
+      start: options.startSigmaEv,
+      lower: 0.15 * stepEv,
+      upper: 1,
+      scale: options.startSigmaEv,
+    },
     { name: "states", start: height, lower: 0, scale: height },
     { name: "statesSlope", start: 0, scale: height },
-    { name: "base", start: withSatellites ? Math.max(floor, 0.1) : above, lower: 0, scale: Math.max(above, 1) },
+    {
+      name: "base",
+      start: withSatellites ? Math.max(floor, 0.1) : above,
+      lower: 0,
+      scale: Math.max(above, 1),
+    },
     ...(withSatellites ? copied.parameters : [{ name: "baseSlope", start: 0, scale: Math.max(above, 1) }]),
   ];
   const shape = { occupation: 0, slopeEv: 0 };

@@ -40,7 +40,9 @@ export function edgeCandidates(energiesEv: Float64Array, counts: Float64Array): 
     let largest = true;
     for (let j = Math.max(0, i - side); j <= Math.min(n - 1, i + side) && largest; j++) {
       if (Math.sign(change[j]) !== Math.sign(change[i])) continue;
-      largest = j < i ? Math.abs(change[j]) < Math.abs(change[i]) : Math.abs(change[j]) <= Math.abs(change[i]);
+      largest = j < i
+        ? Math.abs(change[j]) < Math.abs(change[i])
+        : Math.abs(change[j]) <= Math.abs(change[i]);
     }
     if (!largest) continue;
     candidates.push({
@@ -60,7 +62,9 @@ export function edgeCandidates(energiesEv: Float64Array, counts: Float64Array): 
  */
 export function cutoffCandidate(candidates: readonly EdgeCandidate[]): EdgeCandidate | undefined {
   const strongest = Math.max(0, ...candidates.map((candidate) => candidate.significance));
-  return candidates.find((candidate) => candidate.significance > 0 && candidate.significance >= 0.5 * strongest);
+  return candidates.find((candidate) =>
+    candidate.significance > 0 && candidate.significance >= 0.5 * strongest
+  );
 }
 
 /**
@@ -72,7 +76,12 @@ export function cutoffCandidate(candidates: readonly EdgeCandidate[]): EdgeCandi
  * @param toEv Upper end, eV.
  * @returns Mean, or NaN without a channel there.
  */
-export function meanCounts(energiesEv: Float64Array, counts: Float64Array, fromEv: number, toEv: number): number {
+export function meanCounts(
+  energiesEv: Float64Array,
+  counts: Float64Array,
+  fromEv: number,
+  toEv: number,
+): number {
   let sum = 0;
   let channels = 0;
   for (let i = 0; i < counts.length; i++) {

@@ -6,7 +6,7 @@
  */
 export { type CutoffOptions, fitCutoff, type FittedEdge } from "./cutoff.ts";
 export { type FermiOptions, fitFermiEdge, type FittedFermiEdge } from "./fermi.ts";
-export { fitValenceEdge, type FittedValenceEdge } from "./valence.ts";
+export { type FittedValenceEdge, fitValenceEdge } from "./valence.ts";
 export { cutoffCandidate, type EdgeCandidate, edgeCandidates } from "./locate.ts";
 export { type Satellite } from "./satellites.ts";
 export { type EnergyReference, energyReferences } from "./energy_reference.ts";
@@ -14,8 +14,8 @@ export {
   type BudgetTerm,
   type EdgeRegion,
   type FitInputs,
-  measureWorkFunction,
   type MeasureOptions,
+  measureWorkFunction,
   type RegionUse,
   type Verdict,
   type WorkFunctionResult,

@@ -5,7 +5,7 @@ import { type EnergyReference, energyReferences } from "./energy_reference.ts";
 import { fitFermiEdge, type FittedFermiEdge } from "./fermi.ts";
 import { cutoffCandidate, type EdgeCandidate, edgeCandidates, meanCounts } from "./locate.ts";
 import type { Satellite } from "./satellites.ts";
-import { fitValenceEdge, type FittedValenceEdge } from "./valence.ts";
+import { type FittedValenceEdge, fitValenceEdge } from "./valence.ts";
 
 /** One measured region as a fit needs it. */
 export interface EdgeRegion {
@@ -65,7 +65,8 @@ export interface BudgetTerm {
   /** Standard uncertainty, eV; 0 where it cancels. */
   readonly standardUncertaintyEv: number;
   /** Which results it enters. */
-  readonly enters: readonly ("workFunctionEv" | "maxKineticEnergyEv" | "ionizationEnergyEv" | "valenceBandMaximumEv")[];
+  readonly enters:
+    readonly ("workFunctionEv" | "maxKineticEnergyEv" | "ionizationEnergyEv" | "valenceBandMaximumEv")[];
   /** Where it comes from. */
   readonly note: string;
 }
@@ -158,7 +159,10 @@ const MISFIT_PROBABILITY = 1e-4;
  * @returns The answer; a poor one is a verdict, not an error.
  * @throws {InputError} If no region, photon energy or axis can be settled.
  */
-export function measureWorkFunction(regions: readonly EdgeRegion[], options: MeasureOptions): WorkFunctionResult {
+export function measureWorkFunction(
+  regions: readonly EdgeRegion[],
+  options: MeasureOptions,
+): WorkFunctionResult {
   const chosen = chooseRegions(regions, options).map((region) => ontoKineticAxis(region, options));
   const { photonEnergyEv, photonFrom } = chosen[0];
   const line = options.knownLine(photonEnergyEv);
@@ -166,7 +170,8 @@ export function measureWorkFunction(regions: readonly EdgeRegion[], options: Mea
   const facts = commonFacts(chosen, options);
   const reasons: string[] = [];
   const warnings: Notice[] = [];
-  const warn = (code: string, message: string, place = ""): void => void warnings.push({ code, message, place });
+  const warn = (code: string, message: string, place = ""): void =>
+    void warnings.push({ code, message, place });
 
   const searched = chosen.map((region) => ({
     region,
@@ -233,10 +238,14 @@ export function measureWorkFunction(regions: readonly EdgeRegion[], options: Mea
     reasons.push(reason);
   };
   if (cutoff === null) {
-    fail("no secondary cutoff was found: no rise of the counts with enough channels around it; widen the window");
+    fail(
+      "no secondary cutoff was found: no rise of the counts with enough channels around it; widen the window",
+    );
   } else judge("secondary cutoff", cutoff, fail, reasons);
   if (upper === null) {
-    fail("neither a Fermi edge nor a valence-band edge was found: extend the window to higher kinetic energy");
+    fail(
+      "neither a Fermi edge nor a valence-band edge was found: extend the window to higher kinetic energy",
+    );
   } else judge(fermi ? "Fermi edge" : "valence-band edge", upper, fail, reasons);
   if (cutoff && cutoffPlace && cutoff.converged) {
     const { energiesEv, counts } = cutoffPlace.region;
@@ -244,7 +253,9 @@ export function measureWorkFunction(regions: readonly EdgeRegion[], options: Mea
     const below = meanCounts(energiesEv, counts, position - 0.5, position - 4 * cutoff.sigmaEv.value);
     const above = meanCounts(energiesEv, counts, position + 2 * cutoff.sigmaEv.value, position + 0.5);
     if (!(below < 0.4 * above)) {
-      fail("the lowest rise of the counts is not a cutoff: the counts below it are not small; start lower in energy");
+      fail(
+        "the lowest rise of the counts is not a cutoff: the counts below it are not small; start lower in energy",
+      );
     }
     if (position - energiesEv[0] < 4 * cutoff.sigmaEv.value) {
       reasons.push("the window starts on the cutoff itself; start at least 0.3 eV lower");
@@ -257,15 +268,22 @@ export function measureWorkFunction(regions: readonly EdgeRegion[], options: Mea
     if (references.length > 1) {
       fail("no Fermi edge was found and the axis can be read in several ways; give --fermi-level or --bias");
     } else if (reference === null || !reference.usable) {
-      fail("no Fermi edge was found and the position of the Fermi level on the axis is not known; give --fermi-level");
+      fail(
+        "no Fermi edge was found and the position of the Fermi level on the axis is not known; give --fermi-level",
+      );
     }
   }
 
   // Answer.
   const shape = cutoff === null ? 0 : unexplainedWidthEv(cutoff, fermi?.edge ?? null) / 2;
-  const photonUncertainty = line === null ? 0 : Math.hypot(LINE_UNCERTAINTY_EV, line.energyEv - photonEnergyEv);
+  const photonUncertainty = line === null
+    ? 0
+    : Math.hypot(LINE_UNCERTAINTY_EV, line.energyEv - photonEnergyEv);
   if (line === null) {
-    warn("photon-energy-uncertainty", `${photonEnergyEv} eV is no line of the lamp table: its uncertainty is not included`);
+    warn(
+      "photon-energy-uncertainty",
+      `${photonEnergyEv} eV is no line of the lamp table: its uncertainty is not included`,
+    );
   }
   const budget = cutoff === null || upper === null ? [] : budgetTerms({
     cutoff,
@@ -273,7 +291,9 @@ export function measureWorkFunction(regions: readonly EdgeRegion[], options: Mea
     valence,
     shape,
     photonUncertainty,
-    photonNote: line ? `${line.name} ${line.energyEv} eV, used ${photonEnergyEv} eV` : "not known, not included",
+    photonNote: line
+      ? `${line.name} ${line.energyEv} eV, used ${photonEnergyEv} eV`
+      : "not known, not included",
   });
   const estimate = (quantity: BudgetTerm["enters"][number], value: number): Estimate => ({
     value,
@@ -295,7 +315,11 @@ export function measureWorkFunction(regions: readonly EdgeRegion[], options: Mea
   })();
   const workFunction = result?.workFunction.value;
   if (workFunction !== undefined && !(workFunction >= 1 && workFunction <= 10)) {
-    fail(`the work function would be ${workFunction.toFixed(3)} eV, outside 1..10 eV: check photon energy, bias and axis`);
+    fail(
+      `the work function would be ${
+        workFunction.toFixed(3)
+      } eV, outside 1..10 eV: check photon energy, bias and axis`,
+    );
   }
   if (fermi === null && valence !== null) {
     warn(
@@ -310,7 +334,9 @@ export function measureWorkFunction(regions: readonly EdgeRegion[], options: Mea
   if (satellites.length > 0) {
     warn(
       "lamp-satellites",
-      `${line?.name} has weaker lines ${satellites.map((s) => `${s.shiftEv.toFixed(2)} eV`).join(" and ")} above: ` +
+      `${line?.name} has weaker lines ${
+        satellites.map((s) => `${s.shiftEv.toFixed(2)} eV`).join(" and ")
+      } above: ` +
         "their copies of the spectrum are part of the fit of the upper edge where the window reaches far enough",
     );
   }
@@ -327,7 +353,9 @@ export function measureWorkFunction(regions: readonly EdgeRegion[], options: Mea
     reasons,
     warnings,
     inputs: {
-      regions: chosen.filter((region) => region === cutoffPlace?.region || region === upperRegion).map((region) => ({
+      regions: chosen.filter((region) => region === cutoffPlace?.region || region === upperRegion).map((
+        region,
+      ) => ({
         file: region.file,
         region: region.label,
         rangeEv: region.readRangeEv,
@@ -374,7 +402,9 @@ function chooseRegions(
       place: "--region",
       message: cannot(
         "pick a region",
-        `the label must be one of ${labels.map((l) => JSON.stringify(l)).join(", ")}${near ? ` (did you mean ${near}?)` : ""}`,
+        `the label must be one of ${labels.map((l) => JSON.stringify(l)).join(", ")}${
+          near ? ` (did you mean ${near}?)` : ""
+        }`,
         label,
       ),
     };
@@ -390,7 +420,11 @@ function chooseRegions(
   if (lit.length === 0) {
     throw new InputError([{
       place: named[0]?.file ?? "",
-      message: cannot("fit spectrum", "the photon energy must be in the file or given with --photon-energy", "unknown"),
+      message: cannot(
+        "fit spectrum",
+        "the photon energy must be in the file or given with --photon-energy",
+        "unknown",
+      ),
     }]);
   }
   const lowest = Math.min(...lit.map((region) => region.photonEnergyEv));
@@ -427,7 +461,11 @@ function ontoKineticAxis(
   if (kind === "unknown") {
     throw new InputError([{
       place: region.file,
-      message: cannot("fit spectrum", "the kind of energy axis must be in the file or given with --axis", "unknown"),
+      message: cannot(
+        "fit spectrum",
+        "the kind of energy axis must be in the file or given with --axis",
+        "unknown",
+      ),
     }]);
   }
   const n = region.energiesEv.length;
@@ -460,7 +498,8 @@ function commonFacts(regions: readonly KineticRegion[], options: MeasureOptions)
   const origin = (given: number | undefined, read: number | null, missing: string): string =>
     given !== undefined ? "given by the user" : read !== null ? "file" : missing;
   const temperature = regions.find((region) => region.temperatureK !== null)?.temperatureK ?? null;
-  const acceptance = regions.find((region) => region.acceptanceHalfAngleDeg !== null)?.acceptanceHalfAngleDeg ?? null;
+  const acceptance =
+    regions.find((region) => region.acceptanceHalfAngleDeg !== null)?.acceptanceHalfAngleDeg ?? null;
   return {
     biasV: options.biasV ?? first.biasV,
     biasFrom: origin(options.biasV, first.biasV, "not known"),
@@ -468,7 +507,11 @@ function commonFacts(regions: readonly KineticRegion[], options: MeasureOptions)
     analyzerWorkFunctionEv: first.analyzerWorkFunctionEv,
     analyzerFrom: origin(undefined, first.analyzerWorkFunctionEv, "not known"),
     temperatureK: options.temperatureK ?? temperature ?? DEFAULT_TEMPERATURE_K,
-    temperatureFrom: origin(options.temperatureK, temperature, `not known, ${DEFAULT_TEMPERATURE_K} K assumed`),
+    temperatureFrom: origin(
+      options.temperatureK,
+      temperature,
+      `not known, ${DEFAULT_TEMPERATURE_K} K assumed`,
+    ),
     acceptanceHalfAngleDeg: options.acceptanceHalfAngleDeg ?? acceptance,
     acceptanceFrom: origin(options.acceptanceHalfAngleDeg, acceptance, "not known"),
   };
@@ -539,7 +582,9 @@ function judge(name: string, edge: FittedEdge, fail: (reason: string) => void, r
   }
   if (edge.channelsOnEdge < 3) {
     reasons.push(
-      `only ${edge.channelsOnEdge.toFixed(1)} channels lie on the ${name} (10 to 90 %); measure with a smaller step`,
+      `only ${
+        edge.channelsOnEdge.toFixed(1)
+      } channels lie on the ${name} (10 to 90 %); measure with a smaller step`,
     );
   }
 }

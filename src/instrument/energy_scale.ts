@@ -25,6 +25,10 @@ export function kineticEnergyShiftEv(analyzerWorkFunctionEv: number, biasV: numb
  * @param biasV Sample bias, V; negative accelerates.
  * @returns Gain, eV; negative where the field retards.
  */
-export function accelerationEv(workFunctionEv: number, analyzerWorkFunctionEv: number, biasV: number): number {
+export function accelerationEv(
+  workFunctionEv: number,
+  analyzerWorkFunctionEv: number,
+  biasV: number,
+): number {
   return workFunctionEv + kineticEnergyShiftEv(analyzerWorkFunctionEv, biasV);
 }

@@ -5,5 +5,12 @@
  * @module
  */
 export { accelerationEv, kineticEnergyShiftEv } from "./energy_scale.ts";
-export { applyResponse, FWHM_PER_SIGMA, hemisphereResolutionEv, type ResponseMatrix, responseMatrix, windowEv } from "./resolution.ts";
-export { type Counting, drawCounts, expectedCounts, type ExpectedCounts } from "./counting.ts";
+export {
+  applyResponse,
+  FWHM_PER_SIGMA,
+  hemisphereResolutionEv,
+  type ResponseMatrix,
+  responseMatrix,
+  windowEv,
+} from "./resolution.ts";
+export { type Counting, drawCounts, type ExpectedCounts, expectedCounts } from "./counting.ts";

@@ -3,8 +3,8 @@ import { densityOfStates } from "../sample/mod.ts";
 import type { ResolvedScenario } from "../scenario/mod.ts";
 import {
   DEPTH_CELLS_PER_PATH,
-  detectionTable,
   type DetectionTable,
+  detectionTable,
   directYield,
   energyGrid,
   excitationWeights,
@@ -100,7 +100,10 @@ export function engineData(resolved: ResolvedScenario): EngineData {
  * @returns The engine.
  */
 export function engineFrom(data: EngineData): Engine {
-  return { ...data, run: data.source === null ? null : historyRunner(data.source, data.tables, data.detection) };
+  return {
+    ...data,
+    run: data.source === null ? null : historyRunner(data.source, data.tables, data.detection),
+  };
 }
 
 function tableFunction(
@@ -111,7 +114,9 @@ function tableFunction(
   const low = energiesEv[0];
   const high = energiesEv[energiesEv.length - 1];
   return (energyEv) =>
-    outside !== null && (energyEv < low || energyEv > high) ? outside : interpolateLinear(energiesEv, values, energyEv);
+    outside !== null && (energyEv < low || energyEv > high)
+      ? outside
+      : interpolateLinear(energiesEv, values, energyEv);
 }
 
 /** A Gaussian band as equidistant photon energies with weights that add up to one. */

@@ -38,7 +38,11 @@ export interface ExpectedSpectrum {
  * @param tally Histories of the same engine.
  * @returns Expected counts with standard errors from the scatter between groups of batches.
  */
-export function expectedSpectrum(resolved: ResolvedScenario, engine: EngineData, tally: Tally): ExpectedSpectrum {
+export function expectedSpectrum(
+  resolved: ResolvedScenario,
+  engine: EngineData,
+  tally: Tally,
+): ExpectedSpectrum {
   const { acquisition } = resolved;
   const grid = engine.tables.grid;
   const channels = Math.floor((acquisition.endEv - acquisition.startEv) / acquisition.stepEv + 1e-6) + 1;

@@ -5,4 +5,4 @@
  * @module
  */
 export { type Engine, type EngineData, engineData, engineFrom } from "./engine.ts";
-export { countSpectrum, expectedSpectrum, type ExpectedSpectrum } from "./expected.ts";
+export { countSpectrum, type ExpectedSpectrum, expectedSpectrum } from "./expected.ts";

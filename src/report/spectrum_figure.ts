@@ -61,7 +61,8 @@ const WIDTH = 640;
 const OVERVIEW_HEIGHT = 220;
 const CLOSE_UP_HEIGHT = 170;
 const RESIDUAL_HEIGHT = 80;
-const ROW_GAP = 84;
+/** Between the panels: room for an axis, and above close-ups for their titles. */
+const ROW_GAP = { plain: 56, titled: 84 } as const;
 const CLOSE_UP_GAP = { row: 10, column: 90 } as const;
 const CLOSE_UP_WIDTH = (WIDTH - CLOSE_UP_GAP.column) / 2;
 /** Height of one line of edge labels in the overview. */
@@ -76,6 +77,9 @@ const DARK = "#222222";
 const MEASURED_GRAYS = ["#8c8c8c", "#4d4d4d"] as const;
 /** Edges: blue and vermillion of M. Okabe, K. Ito, Color Universal Design (2008), with dashes for gray print. */
 const EDGE_STYLES = [{ color: "#0072B2", dash: [1, 0] }, { color: "#D55E00", dash: [7, 3] }] as const;
+
+/** A dot in the middle of a symbol as large as those of the lines: legends of unequal height do not stand in line. */
+const SMALL_DOT = "M-0.4,0A0.4,0.4,0,1,1,0.4,0A0.4,0.4,0,1,1,-0.4,0";
 
 const CONFIG = {
   // Otherwise each of thousands of points carries a sentence.
@@ -143,7 +147,7 @@ export function spectrumFigure(input: SpectrumFigureInput): Record<string, unkno
     background: "white",
     padding: 12,
     bounds: "flush",
-    spacing: ROW_GAP,
+    spacing: input.edges.length > 0 ? ROW_GAP.titled : ROW_GAP.plain,
     vconcat: [overview(input), ...lowerRow(input)],
     config: CONFIG,
   };
@@ -184,19 +188,27 @@ function overview({ title, subtitle, axisTitle, measured, expected, edges }: Spe
     scale: { type: "sqrt", domain: [0, Math.max(1, highest) / (1 - headroom) ** 2], nice: false },
     axis: { title: "Counts (square-root scale)", values: squareRootTicks(Math.max(1, highest)) },
   };
-  const measuredLayers = measured.map(({ label, curve }, i) => ({
-    data: { values: points(curve) },
-    mark: curve.counts.length > MOST_DOTS
-      ? { type: "line", interpolate: "step", strokeWidth: 0.8 }
-      : { type: "point", filled: true, size: 9, opacity: 1 },
-    encoding: { x, y, color: legendEntry(label || "measured", MEASURED_GRAYS[i % MEASURED_GRAYS.length]) },
-  }));
+  const measuredLayers = measured.map(({ label, curve }, i) => {
+    const gray = MEASURED_GRAYS[i % MEASURED_GRAYS.length];
+    const isLine = curve.counts.length > MOST_DOTS;
+    return {
+      data: { values: points(curve) },
+      mark: isLine
+        ? { type: "line", interpolate: "step", strokeWidth: 0.8 }
+        : { type: "point", filled: true, size: 9, opacity: 1 },
+      encoding: {
+        x,
+        y,
+        color: legendEntry(label || "measured", gray, isLine ? {} : { symbolType: SMALL_DOT }),
+      },
+    };
+  });
   const fittedLayers = edges.map(({ name, fitted }, i) => {
     const { color, dash } = edgeStyle(i);
     return {
       data: { values: points(fitted) },
       mark: { type: "line", strokeWidth: 2.2, strokeDash: dash, clip: true },
-      encoding: { x, y, color: legendEntry(`${name} fit`, color, dash) },
+      encoding: { x, y, color: legendEntry(`${name} fit`, color, { symbolDash: dash }) },
     };
   });
   const positionLayers = edges.map((edge, i) => {
@@ -276,7 +288,7 @@ function closeUp(edge: FigureEdge, x: EnergyAxis, index: number): Spec {
   const y = {
     field: "counts",
     type: "quantitative",
-    scale: { zero: false },
+    scale: { zero: false, nice: false, padding: 8 },
     axis: { title: "Counts", tickCount: 5 },
   };
   const values = points(edge.data).map((point) => ({
@@ -310,15 +322,15 @@ function closeUp(edge: FigureEdge, x: EnergyAxis, index: number): Spec {
         mark: { type: "rule", color, strokeDash: dash },
       },
       {
-        mark: { type: "rule", color: DARK, strokeWidth: 0.6 },
-        encoding: { y: { ...y, field: "low" }, y2: { field: "high" } },
-      },
-      { mark: { type: "point", filled: true, size: 9, opacity: 1, color: DARK }, encoding: { y } },
-      {
         data: { values: points(edge.fitted) },
         mark: { type: "line", strokeWidth: 1.8, strokeDash: dash, color },
         encoding: { y },
       },
+      {
+        mark: { type: "rule", color: DARK, strokeWidth: 0.6 },
+        encoding: { y: { ...y, field: "low" }, y2: { field: "high" } },
+      },
+      { mark: { type: "point", filled: true, size: 9, opacity: 1, color: DARK }, encoding: { y } },
     ],
   };
 }
@@ -408,23 +420,25 @@ function energyAxis(title: string, domain: [number, number]): EnergyAxis {
 }
 
 /** A legend of one entry: each curve has its own, drawn as its own mark is. */
-function legendEntry(label: string, color: string, dash: readonly number[] = [1, 0]): Spec {
+function legendEntry(label: string, color: string, symbol: Spec = {}): Spec {
   return {
     datum: label,
     type: "nominal",
     scale: { domain: [label], range: [color] },
-    legend: { title: null, symbolDash: dash },
+    legend: { title: null, ...symbol },
   };
 }
 
-/** 1, 2, 5 of each decade from the top down, as long as they stand a tenth of the axis apart; and zero. */
+/** 1, 2, 5 of each decade from the top down, as long as their labels have room; and zero. */
 function squareRootTicks(highest: number): number[] {
+  const room = 0.08 * Math.sqrt(highest);
   const ticks: number[] = [];
   for (let decade = Math.floor(Math.log10(highest)); decade >= 0; decade--) {
     for (const digit of [5, 2, 1]) {
       const tick = digit * 10 ** decade;
       const above = ticks.at(-1) ?? Infinity;
-      if (tick <= highest && Math.sqrt(above) - Math.sqrt(tick) >= 0.1 * Math.sqrt(highest)) ticks.push(tick);
+      const hasRoom = Math.sqrt(above) - Math.sqrt(tick) >= room && Math.sqrt(tick) >= room;
+      if (tick <= highest && hasRoom) ticks.push(tick);
     }
   }
   return [...ticks, 0].reverse();

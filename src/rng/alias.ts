@@ -62,7 +62,12 @@ export function writeAliasRow(weights: ArrayLike<number>, table: Uint32Array, of
  * @param generator Source of randomness.
  * @returns Index of the outcome.
  */
-export function sampleAlias(table: Uint32Array, offset: number, count: number, generator: Xoshiro128pp): number {
+export function sampleAlias(
+  table: Uint32Array,
+  offset: number,
+  count: number,
+  generator: Xoshiro128pp,
+): number {
   const position = generator.nextUint32() * TO_UNIT * count;
   const index = position | 0;
   const entry = table[offset + index];

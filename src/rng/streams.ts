@@ -4,7 +4,11 @@ const GOLDEN_GAMMA = 0x9e3779b97f4a7c15n;
 /** What a stream of random numbers is for; each purpose draws from streams of its own. */
 export type StreamPurpose = "transport" | "counting" | "replicate";
 
-const PURPOSE_NUMBER: Readonly<Record<StreamPurpose, bigint>> = { transport: 1n, counting: 2n, replicate: 3n };
+const PURPOSE_NUMBER: Readonly<Record<StreamPurpose, bigint>> = {
+  transport: 1n,
+  counting: 2n,
+  replicate: 3n,
+};
 
 /**
  * One output of SplitMix64: the finalizer applied to `counter + 0x9e3779b97f4a7c15`.

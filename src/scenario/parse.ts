@@ -118,7 +118,9 @@ export function parseScenario(text: string, fileName: string, overrides: readonl
       place: `${fileName}:${line}`,
       message: cannot(
         "read scenario",
-        `the file must be JSON (${stripComments(text).trim() === "" ? "it is empty" : printParseErrorCode(error)})`,
+        `the file must be JSON (${
+          stripComments(text).trim() === "" ? "it is empty" : printParseErrorCode(error)
+        })`,
         where,
       ),
     }]);
@@ -145,7 +147,10 @@ function duplicateKeys(node: Node, pointer = ""): Problem[] {
     const [key, value] = child.children;
     const place = `${pointer}/${key.value}`;
     if (seen.has(key.value)) {
-      problems.push({ place, message: cannot("read scenario", "each key may be given once", String(key.value)) });
+      problems.push({
+        place,
+        message: cannot("read scenario", "each key may be given once", String(key.value)),
+      });
     }
     seen.add(key.value);
     if (value) problems.push(...duplicateKeys(value, place));
@@ -187,7 +192,9 @@ const UNITS: readonly (readonly [RegExp, string])[] = [
 ];
 
 function toProblems(issue: z.core.$ZodIssue): Problem[] {
-  const pointer = issue.path.map((key) => `/${String(key).replaceAll("~", "~0").replaceAll("/", "~1")}`).join("");
+  const pointer = issue.path.map((key) => `/${String(key).replaceAll("~", "~0").replaceAll("/", "~1")}`).join(
+    "",
+  );
   const key = String(issue.path.at(-1) ?? "scenario");
   const unit = UNITS.find(([pattern]) => pattern.test(key))?.[1];
   const withUnit = (value: unknown): string => (unit ? `${value} ${unit}` : String(value));
@@ -227,10 +234,16 @@ function toProblems(issue: z.core.$ZodIssue): Problem[] {
     case "invalid_value": {
       const choices = issue.values.map(String);
       const near = typeof input === "string" ? suggest(input, choices) : undefined;
-      return say(`${key} must be one of ${choices.join(", ")}${near ? ` (did you mean ${near}?)` : ""}`, input);
+      return say(
+        `${key} must be one of ${choices.join(", ")}${near ? ` (did you mean ${near}?)` : ""}`,
+        input,
+      );
     }
     case "invalid_union":
-      return say(`${key} must be ${key === "kind" ? `one of ${kindsAt(issue.path).join(", ")}` : "known"}`, input);
+      return say(
+        `${key} must be ${key === "kind" ? `one of ${kindsAt(issue.path).join(", ")}` : "known"}`,
+        input,
+      );
     default:
       return say(`${key} must be valid (${issue.message})`, input);
   }
@@ -267,7 +280,9 @@ function knownKeys(path: readonly PropertyKey[], input: unknown): string[] {
   if (!(schema instanceof z.ZodDiscriminatedUnion)) return [];
   const kind = (input as { kind?: unknown } | undefined)?.kind;
   const options = schema.options as z.ZodObject[];
-  const chosen = options.filter((option) => option.safeParse({ kind }).error?.issues.every((i) => i.path[0] !== "kind"));
+  const chosen = options.filter((option) =>
+    option.safeParse({ kind }).error?.issues.every((i) => i.path[0] !== "kind")
+  );
   return [...new Set((chosen.length > 0 ? chosen : options).flatMap((option) => Object.keys(option.shape)))];
 }
 

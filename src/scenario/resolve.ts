@@ -1,5 +1,12 @@
 import { cannot, InputError, type Notice, type Problem, suggest } from "../base/mod.ts";
-import { BOLTZMANN_EV_PER_K, HC_EV_NM, lampLines, material, type Material, opticalConstantsAt } from "../data/mod.ts";
+import {
+  BOLTZMANN_EV_PER_K,
+  HC_EV_NM,
+  lampLines,
+  type Material,
+  material,
+  opticalConstantsAt,
+} from "../data/mod.ts";
 import { accelerationEv, hemisphereResolutionEv, kineticEnergyShiftEv } from "../instrument/mod.ts";
 import { absorption, type BandModel, densityOfStates } from "../sample/mod.ts";
 import type { AcquisitionSettings, Scenario } from "./types.ts";
@@ -47,7 +54,9 @@ export interface ResolvedScenario {
   /** kT, eV. */
   readonly thermalEnergyEv: number;
   /** Density of states: the material's band model, or the user's table. */
-  readonly states: { readonly kind: "model"; readonly model: BandModel } | ({ readonly kind: "table" } & UserTable);
+  readonly states:
+    | { readonly kind: "model"; readonly model: BandModel }
+    | ({ readonly kind: "table" } & UserTable);
   /** Depth of the band bottom below the Fermi level, eV. */
   readonly bandBottomBelowFermiEv: number;
   /** Inelastic mean free path: one value that fixes the model's law, or the user's table. */
@@ -133,7 +142,11 @@ export function resolveScenario(scenario: Scenario, tables: UserTables = {}): Re
       attempt(light.kind === "lamp" ? "/light/lamp" : "/light/centerEv", () => {
         if (line.energyEv > HIGHEST_PHOTON_EV) {
           throw new RangeError(
-            cannot("simulate light", `photon energies must be <= ${HIGHEST_PHOTON_EV} eV`, `${line.energyEv} eV`),
+            cannot(
+              "simulate light",
+              `photon energies must be <= ${HIGHEST_PHOTON_EV} eV`,
+              `${line.energyEv} eV`,
+            ),
           );
         }
         return absorption(
@@ -150,25 +163,37 @@ export function resolveScenario(scenario: Scenario, tables: UserTables = {}): Re
       place: "/simulation/energyStepEv",
       message: cannot(
         "simulate",
-        `energyStepEv must be >= ${(highest / MOST_BINS).toPrecision(2)} eV at ${highest.toFixed(2)} eV photons`,
+        `energyStepEv must be >= ${(highest / MOST_BINS).toPrecision(2)} eV at ${
+          highest.toFixed(2)
+        } eV photons`,
         `${scenario.simulation.energyStepEv} eV`,
       ),
     });
   }
-  for (const [key, table] of [["densityOfStatesFile", "densityOfStates"], ["meanFreePathFile", "meanFreePath"]] as const) {
+  for (
+    const [key, table] of [["densityOfStatesFile", "densityOfStates"], [
+      "meanFreePathFile",
+      "meanFreePath",
+    ]] as const
+  ) {
     if (sample[key] !== null && tables[table] === undefined) {
-      problems.push({ place: `/sample/${key}`, message: cannot("use scenario", "the file must be readable", sample[key]) });
+      problems.push({
+        place: `/sample/${key}`,
+        message: cannot("use scenario", "the file must be readable", sample[key]),
+      });
     }
   }
   if (problems.length > 0 || !chosen || !faceSource || !lines || !optics) throw new InputError(problems);
 
   const workFunctionEv = sample.workFunctionEv ?? faceSource.value;
-  const resolutionFwhmEv = analyzer.resolution.kind === "fwhm" ? analyzer.resolution.fwhmEv : hemisphereResolutionEv(
-    analyzer.resolution.passEnergyEv,
-    analyzer.resolution.slitWidthMm,
-    analyzer.resolution.meanRadiusMm,
-    (analyzer.resolution.slitHalfAngleDeg * Math.PI) / 180,
-  );
+  const resolutionFwhmEv = analyzer.resolution.kind === "fwhm"
+    ? analyzer.resolution.fwhmEv
+    : hemisphereResolutionEv(
+      analyzer.resolution.passEnergyEv,
+      analyzer.resolution.slitWidthMm,
+      analyzer.resolution.meanRadiusMm,
+      (analyzer.resolution.slitHalfAngleDeg * Math.PI) / 180,
+    );
   const resolvedLines = lines.map((line, i) => ({
     name: line.name,
     energyEv: line.energyEv,
@@ -191,7 +216,9 @@ export function resolveScenario(scenario: Scenario, tables: UserTables = {}): Re
     workFunctionSource: sample.workFunctionEv === null ? faceSource.source : "scenario",
     temperatureK: sample.temperatureK,
     thermalEnergyEv: BOLTZMANN_EV_PER_K * sample.temperatureK,
-    states: tables.densityOfStates ? { kind: "table", ...tables.densityOfStates } : { kind: "model", model: bandModel },
+    states: tables.densityOfStates
+      ? { kind: "table", ...tables.densityOfStates }
+      : { kind: "model", model: bandModel },
     bandBottomBelowFermiEv: bandModel.bandBottomBelowFermiEv,
     meanFreePath: tables.meanFreePath ? { kind: "table", ...tables.meanFreePath } : {
       kind: "reference",
@@ -202,7 +229,8 @@ export function resolveScenario(scenario: Scenario, tables: UserTables = {}): Re
     barrier: sample.barrier,
     lines: resolvedLines,
     photonEnergyEv: lines[0].energyEv,
-    absorbedPhotonsPerS: light.photonFluxPerS * resolvedLines.reduce((sum, line) => sum + line.absorbedWeight, 0),
+    absorbedPhotonsPerS: light.photonFluxPerS *
+      resolvedLines.reduce((sum, line) => sum + line.absorbedWeight, 0),
     acceptanceHalfAngleDeg: analyzer.acceptanceHalfAngleDeg,
     emissionAngleDeg: geometry.emissionAngleDeg,
     analyzerWorkFunctionEv: analyzer.workFunctionEv,
@@ -237,7 +265,8 @@ function faceWorkFunction(chosen: Material, face: string): { value: number; sour
 /** What will hide or disturb the edges, from the numbers alone. */
 function foresee(r: Omit<ResolvedScenario, "warnings">): Notice[] {
   const warnings: Notice[] = [];
-  const warn = (code: string, place: string, message: string): void => void warnings.push({ code, place, message });
+  const warn = (code: string, place: string, message: string): void =>
+    void warnings.push({ code, place, message });
   const { startEv, endEv, stepEv } = r.acquisition;
   const cutoffEv = r.workFunctionEv + r.kineticEnergyShiftEv;
   const fermiEv = r.photonEnergyEv + r.kineticEnergyShiftEv;
@@ -246,39 +275,67 @@ function foresee(r: Omit<ResolvedScenario, "warnings">): Notice[] {
     warn(
       "below-threshold",
       "/light",
-      `the photon energy ${show(r.photonEnergyEv)} is not above the work function ${show(r.workFunctionEv)}: only the thermal tail of the electrons can leave`,
+      `the photon energy ${show(r.photonEnergyEv)} is not above the work function ${
+        show(r.workFunctionEv)
+      }: only the thermal tail of the electrons can leave`,
     );
   }
   if (cutoffEv <= 0) {
     warn(
       "cutoff-hidden",
       "/biasV",
-      `the cutoff would be recorded at ${show(cutoffEv)}, below the analyzer's own limit at 0 eV: apply a bias below ${
-        (r.biasV + cutoffEv).toFixed(2)
-      } V`,
+      `the cutoff would be recorded at ${
+        show(cutoffEv)
+      }, below the analyzer's own limit at 0 eV: apply a bias below ${(r.biasV + cutoffEv).toFixed(2)} V`,
     );
   } else if (startEv > cutoffEv - r.resolutionFwhmEv) {
-    warn("cutoff-outside", "/acquisition/startEv", `the window starts at ${show(startEv)}, above the foot of the cutoff at ${show(cutoffEv)}`);
+    warn(
+      "cutoff-outside",
+      "/acquisition/startEv",
+      `the window starts at ${show(startEv)}, above the foot of the cutoff at ${show(cutoffEv)}`,
+    );
   }
   if (endEv < fermiEv + r.resolutionFwhmEv) {
-    warn("fermi-edge-outside", "/acquisition/endEv", `the window ends at ${show(endEv)}, before the Fermi edge at ${show(fermiEv)} is over`);
+    warn(
+      "fermi-edge-outside",
+      "/acquisition/endEv",
+      `the window ends at ${show(endEv)}, before the Fermi edge at ${show(fermiEv)} is over`,
+    );
   }
   if (stepEv > 0.6 * r.resolutionFwhmEv) {
-    warn("step-coarse", "/acquisition/stepEv", `the step ${show(stepEv)} is coarse for a resolution of ${show(r.resolutionFwhmEv)}: take at most half of it`);
+    warn(
+      "step-coarse",
+      "/acquisition/stepEv",
+      `the step ${show(stepEv)} is coarse for a resolution of ${
+        show(r.resolutionFwhmEv)
+      }: take at most half of it`,
+    );
   }
   if (r.biasV > 0) {
-    warn("bias-retards", "/biasV", `a positive bias of ${r.biasV} V retards electrons; negative values accelerate them`);
+    warn(
+      "bias-retards",
+      "/biasV",
+      `a positive bias of ${r.biasV} V retards electrons; negative values accelerate them`,
+    );
   }
   if (r.emissionAngleDeg > r.acceptanceHalfAngleDeg && r.accelerationEv > 0) {
     const tangent = Math.tan(((r.emissionAngleDeg - r.acceptanceHalfAngleDeg) * Math.PI) / 180);
     warn(
       "cutoff-displaced",
       "/geometry/emissionAngleDeg",
-      `off normal the slowest electrons miss the analyzer: the cutoff appears ${show(Math.max(0, cutoffEv) * tangent * tangent)} too high`,
+      `off normal the slowest electrons miss the analyzer: the cutoff appears ${
+        show(Math.max(0, cutoffEv) * tangent * tangent)
+      } too high`,
     );
   }
   if (r.energyStepEv > 0.5 * r.resolutionFwhmEv) {
-    warn("grid-coarse", "/simulation/energyStepEv", `the transport grid of ${show(r.energyStepEv)} is coarse for a resolution of ${show(r.resolutionFwhmEv)}`);
+    warn(
+      "grid-coarse",
+      "/simulation/energyStepEv",
+      `the transport grid of ${show(r.energyStepEv)} is coarse for a resolution of ${
+        show(r.resolutionFwhmEv)
+      }`,
+    );
   }
   if (r.states.kind === "model" && r.lines.length > 1) {
     const states = densityOfStates(r.states.model);
@@ -286,12 +343,18 @@ function foresee(r: Omit<ResolvedScenario, "warnings">): Notice[] {
       const shift = line.energyEv - r.photonEnergyEv;
       const share = (line.absorbedWeight * states(-shift)) / (r.lines[0].absorbedWeight * states(0));
       if (shift < 0 && shift > -3) {
-        warn("satellite-edge-below", "/light", `${line.name} makes a second Fermi edge ${show(-shift)} below the main one`);
+        warn(
+          "satellite-edge-below",
+          "/light",
+          `${line.name} makes a second Fermi edge ${show(-shift)} below the main one`,
+        );
       } else if (shift > 0 && share > GHOST_SHARE) {
         warn(
           "satellite-under-edge",
           "/light",
-          `${line.name} puts its copy of the states at ${show(shift)} binding energy under the Fermi edge, ${(100 * share).toFixed(0)} % of its step`,
+          `${line.name} puts its copy of the states at ${show(shift)} binding energy under the Fermi edge, ${
+            (100 * share).toFixed(0)
+          } % of its step`,
         );
       }
     }

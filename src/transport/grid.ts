@@ -26,7 +26,11 @@ const THERMAL_REACH = 16;
  */
 export function energyGrid(
   stepEv: number,
-  limits: { readonly photonEnergyEv: number; readonly workFunctionEv: number; readonly thermalEnergyEv: number },
+  limits: {
+    readonly photonEnergyEv: number;
+    readonly workFunctionEv: number;
+    readonly thermalEnergyEv: number;
+  },
 ): EnergyGrid {
   const thermalBins = Math.ceil((THERMAL_REACH * limits.thermalEnergyEv) / stepEv);
   return {

@@ -102,7 +102,11 @@ export function photonSource(inputs: readonly PhotonSourceInput[]): PhotonSource
  * @param detection Barrier and acceptance; made for the same grid.
  * @returns Expected electrons per absorbed photon, shape (grid.count).
  */
-export function directYield(source: PhotonSource, tables: PairTables, detection: DetectionTable): Float64Array {
+export function directYield(
+  source: PhotonSource,
+  tables: PairTables,
+  detection: DetectionTable,
+): Float64Array {
   const { vacuumBin, count } = tables.grid;
   const { probability, cells } = detection;
   const direct = new Float64Array(count);
@@ -112,7 +116,9 @@ export function directYield(source: PhotonSource, tables: PairTables, detection:
     const decay = Math.exp(-cellDepths);
     let absorbed = -Math.expm1(-cellDepths);
     let sum = 0;
-    for (let c = 0; c < cells; c++, absorbed *= decay) sum += absorbed * probability[(bin - vacuumBin) * cells + c];
+    for (let c = 0; c < cells; c++, absorbed *= decay) {
+      sum += absorbed * probability[(bin - vacuumBin) * cells + c];
+    }
     direct[bin] += source.probabilities[outcome] * sum;
   });
   return direct;
@@ -133,8 +139,13 @@ export function directYield(source: PhotonSource, tables: PairTables, detection:
  * @param detection Barrier and acceptance; made for the same grid.
  * @returns A function that runs batch number `batch` of seed `seed`, {@link HISTORIES_PER_BATCH} histories.
  */
-export function historyRunner(source: PhotonSource, tables: PairTables, detection: DetectionTable): Histories {
-  const { grid, lossTable, lossOffset, lossCount, struckTable, struckOffset, struckCount, inelasticShare } = tables;
+export function historyRunner(
+  source: PhotonSource,
+  tables: PairTables,
+  detection: DetectionTable,
+): Histories {
+  const { grid, lossTable, lossOffset, lossCount, struckTable, struckOffset, struckCount, inelasticShare } =
+    tables;
   const { vacuumBin, stepEv, count } = grid;
   const { probability, cells, input: surface } = detection;
   const outcomes = source.table.length;

@@ -10,14 +10,20 @@
 export { type EnergyGrid, energyGrid } from "./grid.ts";
 export { excitationWeights, fermiOccupation } from "./excitation.ts";
 export { type MeanFreePath, type PairTables, pairTables, type PairTablesInput } from "./pair_tables.ts";
-export { acceptedShare, barrierTransmission, type DetectionInput, detectionTable, type DetectionTable } from "./detection.ts";
+export {
+  acceptedShare,
+  barrierTransmission,
+  type DetectionInput,
+  type DetectionTable,
+  detectionTable,
+} from "./detection.ts";
 export {
   type BatchTally,
   DEPTH_CELLS_PER_PATH,
   directYield,
   emptyBatchTally,
-  HISTORIES_PER_BATCH,
   type Histories,
+  HISTORIES_PER_BATCH,
   historyRunner,
   type PhotonSource,
   photonSource,

@@ -24,7 +24,19 @@ const MAY_IMPORT: Readonly<Record<string, readonly string[]>> = {
 };
 
 /** Rooms that must also run in a browser page. */
-const PURE = ["base", "math", "rng", "data", "sample", "transport", "instrument", "spectrum", "fit", "edges", "formats"]
+const PURE = [
+  "base",
+  "math",
+  "rng",
+  "data",
+  "sample",
+  "transport",
+  "instrument",
+  "spectrum",
+  "fit",
+  "edges",
+  "formats",
+]
   .concat("scenario", "model");
 
 interface SourceFile {
@@ -78,8 +90,11 @@ Deno.test("every room has a mod.ts that only re-exports and says what the room i
 });
 
 Deno.test("pure rooms call nothing of Deno, Node, the clock, the console or unseeded randomness", async () => {
-  const forbidden = /\bDeno\.|"node:|\bprocess\.|\bconsole\.|Math\.random|Date\.now|new Date\(|performance\.now|\bfetch\(/;
-  const broken = (await sourceFiles()).filter(({ room, text }) => PURE.includes(room) && forbidden.test(text));
+  const forbidden =
+    /\bDeno\.|"node:|\bprocess\.|\bconsole\.|Math\.random|Date\.now|new Date\(|performance\.now|\bfetch\(/;
+  const broken = (await sourceFiles()).filter(({ room, text }) =>
+    PURE.includes(room) && forbidden.test(text)
+  );
   assert.deepEqual(broken.map(({ path }) => path), []);
 });
 

@@ -1,0 +1,18 @@
+/**
+ * Room `data`: numbers from outside, each with its source and how sure it is: constants, lamp lines, materials.
+ *
+ * @module
+ */
+export { BOLTZMANN_EV_PER_K, HC_EV_NM } from "./constants.ts";
+export type { Cited, Confidence } from "./cited.ts";
+export { LAMP_NAMES, type LampLine, lampLines, nearestLine } from "./lamps.ts";
+export {
+  type CitedLobe,
+  listMaterialValues,
+  type Material,
+  material,
+  MATERIAL_IDS,
+  type MaterialValue,
+  opticalConstantsAt,
+  parseMaterial,
+} from "./materials.ts";
