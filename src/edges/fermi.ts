@@ -87,9 +87,10 @@ export function fitFermiEdge(
   ];
   const shape = { occupation: 0, slopeEv: 0 };
   const model = (p: Float64Array, out: Float64Array): void => {
+    const edgeShape = broadenedFermiEdge(options.thermalEnergyEv, p[1]);
     for (let i = 0; i < window.length; i++) {
       const x = window[i] - p[0];
-      broadenedFermiEdge(x, options.thermalEnergyEv, p[1], shape);
+      edgeShape(x, shape);
       out[i] = p[2] * shape.occupation + p[3] * shape.slopeEv + p[4];
       if (!withSatellites) out[i] += p[5] * x;
       for (let s = 0; s < copied.copies.length; s++) out[i] += p[5 + s] * copied.copies[s][i];

@@ -143,6 +143,8 @@ const AXIS_UNCERTAINTY_EV = 0.03;
 /** A fall weaker than this share of another one a satellite's distance below is that one's ghost. */
 const GHOST_SHARE = 0.04;
 const GHOST_DISTANCE_EV = 0.15;
+/** Standard uncertainty of the acceptance ramp as a share of its width: flat emitter, flat entrance, sharp cone (chosen). */
+const RAMP_SHARE = 0.02;
 /** Misfit that makes an edge doubtful: reduced chi-square and chance probability together. */
 const MISFIT_REDUCED = 2;
 const MISFIT_PROBABILITY = 1e-4;
@@ -275,7 +277,10 @@ export function measureWorkFunction(
   }
 
   // Answer.
-  const shape = cutoff === null ? 0 : unexplainedWidthEv(cutoff, fermi?.edge ?? null) / 2;
+  const shape = cutoff === null ? 0 : Math.hypot(
+    unexplainedWidthEv(cutoff, fermi?.edge ?? null) / 2,
+    rampKnown ? RAMP_SHARE * tangent * Math.abs(cutoff.positionEv.value) : 0,
+  );
   const photonUncertainty = line === null
     ? 0
     : Math.hypot(LINE_UNCERTAINTY_EV, line.energyEv - photonEnergyEv);

@@ -15,6 +15,8 @@ export interface PoissonFit extends FitResult {
  */
 const LEAST_EXPECTATION = 0.05;
 const MOST_ROUNDS = 15;
+/** Steps of a round end below this, in standard errors: the next round moves the target anyway. */
+const STEP_TOLERANCE = 1e-3;
 /** Rounds end when no parameter moves by more than this share of its standard error. */
 const ROUND_TOLERANCE = 1e-3;
 
@@ -49,6 +51,7 @@ export function minimizePoisson(problem: PoissonProblem): PoissonFit {
     fit = minimize({
       ...problem,
       parameters,
+      tolerance: problem.tolerance ?? STEP_TOLERANCE,
       sigma: expected.map((mean) => Math.sqrt(Math.max(mean, LEAST_EXPECTATION))),
     });
     evaluations += fit.evaluations;

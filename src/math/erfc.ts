@@ -45,14 +45,74 @@ export function erfcx(x: number): number {
   return x < SERIES_LIMIT ? Math.exp(x * x) * erfc(x) : scaledErfcFraction(x);
 }
 
+/** Taylor expansions about equidistant nodes, `order + 1` coefficients each; any smooth function becomes a short sum. */
+interface TaylorTable {
+  readonly first: number;
+  readonly perUnit: number;
+  readonly order: number;
+  readonly coefficients: Float64Array;
+}
+
+function taylorTable(
+  first: number,
+  last: number,
+  perUnit: number,
+  order: number,
+  fill: (node: number, coefficients: Float64Array) => void,
+): TaylorTable {
+  const nodes = Math.round((last - first) * perUnit) + 1;
+  const coefficients = new Float64Array(nodes * (order + 1));
+  for (let i = 0; i < nodes; i++) {
+    fill(first + i / perUnit, coefficients.subarray(i * (order + 1), (i + 1) * (order + 1)));
+  }
+  return { first, perUnit, order, coefficients };
+}
+
+function evaluate({ first, perUnit, order, coefficients }: TaylorTable, x: number): number {
+  const node = Math.round((x - first) * perUnit);
+  const distance = x - first - node / perUnit;
+  let at = (node + 1) * (order + 1) - 1;
+  let sum = coefficients[at];
+  for (let n = 0; n < order; n++) sum = sum * distance + coefficients[--at];
+  return sum;
+}
+
+const NORMAL_REACH = 9;
+/** From `F'' = -x F'`. */
+const NORMAL = taylorTable(-NORMAL_REACH, NORMAL_REACH, 16, 8, (x, c) => {
+  c[0] = 0.5 * erfc(-x * Math.SQRT1_2);
+  c[1] = normalPdf(x);
+  for (let n = 0; n + 2 < c.length; n++) {
+    c[n + 2] = -(x * (n + 1) * c[n + 1] + n * c[n]) / ((n + 1) * (n + 2));
+  }
+});
+
+const SCALED_REACH = 6;
+/** From `y' = 2 x y - 2/sqrt(pi)`. */
+const SCALED = taylorTable(0, SCALED_REACH, 16, 9, (x, c) => {
+  c[0] = erfcx(x);
+  c[1] = 2 * x * c[0] - TWO_OVER_SQRT_PI;
+  for (let n = 1; n + 1 < c.length; n++) c[n + 1] = (2 * x * c[n] + 2 * c[n - 1]) / (n + 1);
+});
+
 /**
- * Standard normal distribution function.
+ * {@link erfcx} for fits: from a table, many times faster, relative error below 1e-11 for x >= 0.
+ *
+ * @param x A real number >= 0.
+ * @returns exp(x^2) erfc(x).
+ */
+export function fastErfcx(x: number): number {
+  return x < SCALED_REACH ? evaluate(SCALED, x) : scaledErfcFraction(x);
+}
+
+/**
+ * Standard normal distribution function, from a table; absolute error below 1e-14.
  *
  * @param x Distance from the mean in standard deviations.
  * @returns Probability of a smaller value, 0..1.
  */
 export function normalCdf(x: number): number {
-  return 0.5 * erfc(-x * Math.SQRT1_2);
+  return x <= -NORMAL_REACH ? 0 : x >= NORMAL_REACH ? 1 : evaluate(NORMAL, x);
 }
 
 /**

@@ -3,6 +3,6 @@
  *
  * @module
  */
-export { erfc, erfcx, normalCdf, normalPdf } from "./erfc.ts";
+export { erfc, erfcx, fastErfcx, normalCdf, normalPdf } from "./erfc.ts";
 export { interpolateLinear } from "./interpolate.ts";
 export { gaussLegendre, type QuadratureRule } from "./quadrature.ts";

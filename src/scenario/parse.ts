@@ -69,7 +69,7 @@ const acquisition = z.strictObject({
 });
 
 const simulation = z.strictObject({
-  histories: z.int().min(8192).max(1e12).default(2_000_000),
+  histories: z.int().min(8192).max(1e12).default(20_000_000),
   seed: z.int().min(0).default(1),
   energyStepEv: energy(0.002, 0.1).default(0.02),
 });

@@ -91,7 +91,7 @@ export interface AcquisitionSettings {
 
 /** How the simulation is run. */
 export interface SimulationSettings {
-  /** Photons followed, rounded up to whole batches of 4096, 8192..1e12. Default: 2000000. */
+  /** Photons followed, rounded up to whole batches of 4096, 8192..1e12. Default: 20000000. */
   readonly histories: number;
   /** Seed of all random numbers, a whole number 0..2^53 - 1. Default: 1. */
   readonly seed: number;

@@ -12,6 +12,9 @@ export interface FermiEdgeShape {
 const COLD_SHARE = 0.05;
 const REACH_SIGMAS = 6.5;
 
+/** Beyond this many kT and standard deviations from the edge it is a full or an empty band, to 1e-10. */
+const REACH_THERMAL = 24;
+
 /**
  * Fermi-Dirac edge, and its first moment, folded with a Gaussian response.
  *
@@ -19,39 +22,47 @@ const REACH_SIGMAS = 6.5;
  * sigma/1.2) the error is below 1e-7. For kT < sigma/20 by the Sommerfeld expansion (N. Ashcroft, N. Mermin, Solid State
  * Physics, app. C; cited from memory).
  *
- * @param energyEv Energy from the Fermi level, eV.
  * @param thermalEnergyEv kT, eV, >= 0.
  * @param sigmaEv Standard deviation of the response, eV, > 0.
- * @param out Receives the result, so that fits allocate nothing.
+ * @returns A function that writes the shape at an energy from the Fermi level (eV) into `out`, so that fits allocate
+ * nothing per channel.
  */
 export function broadenedFermiEdge(
-  energyEv: number,
   thermalEnergyEv: number,
   sigmaEv: number,
-  out: { -readonly [key in keyof FermiEdgeShape]: FermiEdgeShape[key] },
-): void {
+): (energyEv: number, out: { -readonly [key in keyof FermiEdgeShape]: FermiEdgeShape[key] }) => void {
   if (thermalEnergyEv < COLD_SHARE * sigmaEv) {
-    const x = energyEv / sigmaEv;
-    const density = normalPdf(x);
     const thermal = (Math.PI * thermalEnergyEv) ** 2 / 6;
-    out.occupation = normalCdf(-x) + (thermal * x * density) / (sigmaEv * sigmaEv);
-    out.slopeEv = energyEv * normalCdf(-x) - sigmaEv * density - (thermal * density) / sigmaEv;
-    return;
+    return (energyEv, out) => {
+      const x = energyEv / sigmaEv;
+      const density = normalPdf(x);
+      out.occupation = normalCdf(-x) + (thermal * x * density) / (sigmaEv * sigmaEv);
+      out.slopeEv = energyEv * normalCdf(-x) - sigmaEv * density - (thermal * density) / sigmaEv;
+    };
   }
   const step = Math.min(sigmaEv / 1.2, thermalEnergyEv);
   const half = Math.ceil((REACH_SIGMAS * sigmaEv) / step);
-  let norm = 0;
-  let occupation = 0;
-  let slope = 0;
-  for (let i = -half; i <= half; i++) {
-    const t = (i * step) / sigmaEv;
-    const weight = Math.exp(-0.5 * t * t);
-    const shifted = energyEv - i * step;
-    const filled = weight / (1 + Math.exp(shifted / thermalEnergyEv));
-    norm += weight;
-    occupation += filled;
-    slope += filled * shifted;
-  }
-  out.occupation = occupation / norm;
-  out.slopeEv = slope / norm;
+  const weights = Float64Array.from(
+    { length: 2 * half + 1 },
+    (_, i) => normalPdf(((i - half) * step) / sigmaEv),
+  );
+  const norm = weights.reduce((sum, weight) => sum + weight, 0);
+  const reach = REACH_THERMAL * thermalEnergyEv + REACH_SIGMAS * sigmaEv;
+  return (energyEv, out) => {
+    if (Math.abs(energyEv) > reach) {
+      out.occupation = energyEv < 0 ? 1 : 0;
+      out.slopeEv = energyEv < 0 ? energyEv : 0;
+      return;
+    }
+    let occupation = 0;
+    let slope = 0;
+    for (let i = 0; i < weights.length; i++) {
+      const shifted = energyEv - (i - half) * step;
+      const filled = weights[i] / (1 + Math.exp(shifted / thermalEnergyEv));
+      occupation += filled;
+      slope += filled * shifted;
+    }
+    out.occupation = occupation / norm;
+    out.slopeEv = slope / norm;
+  };
 }

@@ -1,4 +1,4 @@
-import { erfcx, normalCdf, normalPdf } from "../math/mod.ts";
+import { fastErfcx, normalCdf, normalPdf } from "../math/mod.ts";
 
 /**
  * Step with an exponentially decaying top, `exp(-x / decay)` for x > 0, folded with a Gaussian: the exponentially
@@ -14,7 +14,7 @@ export function broadenedTopStep(x: number, sigmaEv: number, decayEv: number): n
   const ratio = sigmaEv / decayEv;
   const argument = (ratio - x / sigmaEv) * Math.SQRT1_2;
   return argument > 0
-    ? 0.5 * Math.exp(-0.5 * (x / sigmaEv) ** 2) * erfcx(argument)
+    ? 0.5 * Math.exp(-0.5 * (x / sigmaEv) ** 2) * fastErfcx(argument)
     : Math.exp(0.5 * ratio * ratio - x / decayEv) * normalCdf(x / sigmaEv - ratio);
 }
 
