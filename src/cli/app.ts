@@ -408,7 +408,9 @@ export async function runCli(
   streams: { readonly stdout: TerminalStream; readonly stderr: TerminalStream },
 ): Promise<number> {
   const context: Context = { process: { stdout: streams.stdout, stderr: streams.stderr }, exitCode: GOOD };
-  const outer = { stdout: streams.stdout, stderr: streams.stderr, exitCode: 0 as number | string | null };
+  const outer: { stdout: TerminalStream; stderr: TerminalStream; exitCode?: number | string | null } = {
+    ...streams,
+  };
   await run(application, args, { process: outer, forCommand: () => context });
   const code = Number(outer.exitCode ?? 0);
   // The argument parser reports its own usage errors as negative codes (as bytes: above 200).

@@ -116,7 +116,7 @@ export function fitText(result: WorkFunctionResult): string {
         use.rangeEv[1]
       } eV: ${use.use}`
     ),
-    `  photon energy ${inputs.photonEnergyEv.value} eV, ${inputs.photonEnergyEv.from}`,
+    `  photon energy ${shortEv(inputs.photonEnergyEv.value)}, ${inputs.photonEnergyEv.from}`,
     `  bias ${inputs.biasV.value === null ? "" : `${inputs.biasV.value} V, `}${inputs.biasV.from}`,
     `  ${inputs.axis.kind} energy axis, ${inputs.axis.from}; temperature ${inputs.temperatureK.value} K, ${inputs.temperatureK.from}`,
     `  Fermi level ${
@@ -128,6 +128,11 @@ export function fitText(result: WorkFunctionResult): string {
     ),
     ...result.warnings.map((warning) => `Warning: ${noticeText(warning)}`),
   ].join("\n");
+}
+
+/** An energy for people: at most five decimals. */
+function shortEv(energyEv: number): string {
+  return `${Number(energyEv.toFixed(5))} eV`;
 }
 
 /**
@@ -177,9 +182,8 @@ export function fitSvg({ regions, result }: FitRun, title: string): Promise<stri
         ...(result.valenceBandMaximumEv && ionizationEnergyEv
           ? [`ionization energy ${formatEstimate(ionizationEnergyEv, "eV")}`]
           : []),
-        `verdict: ${result.verdict}`,
-        `h\u03bd = ${inputs.photonEnergyEv.value} eV`,
       ].join(", "),
+      `verdict: ${result.verdict}, h\u03bd = ${shortEv(inputs.photonEnergyEv.value)}`,
     ],
     axisTitle: inputs.axis.kind === "kinetic"
       ? "Kinetic energy on the axis of the file / eV"

@@ -210,13 +210,13 @@ export function spectrumSvg({ resolved, expected, counts, result }: Simulation):
   return renderSvg(spectrumFigure({
     title: resolved.title,
     subtitle: [
-      `simulated, h\u03bd = ${resolved.photonEnergyEv.toFixed(3)} eV, bias ${resolved.biasV} V, ` +
-      `W = ${resolved.workFunctionEv.toFixed(3)} eV, ${
-        result.histories.toExponential(2)
-      } histories, seed ${resolved.seed}`,
+      `simulated: h\u03bd = ${resolved.photonEnergyEv.toFixed(3)} eV, bias ${resolved.biasV} V, W = ${
+        resolved.workFunctionEv.toFixed(3)
+      } eV`,
+      `${result.histories.toExponential(2)} histories, seed ${resolved.seed}`,
     ],
     axisTitle: "Kinetic energy as recorded / eV",
-    measured: [{ label: "", curve: { energiesEv, counts } }],
+    measured: [{ label: "simulated counts", curve: { energiesEv, counts } }],
     expected: { energiesEv, counts: expected.counts, standardErrors: expected.standardErrors },
     edges: [],
   }));

@@ -8,8 +8,10 @@ export interface EdgeCandidate {
   readonly significance: number;
 }
 
-/** Width on each side over which counts are added to look for an edge, eV. */
-const SIDE_EV = 0.1;
+/** Widths on each side over which counts are added to look for an edge, eV: for sharp edges, and for slow or faint ones. */
+export const SHARP_EV = 0.1;
+/** See {@link SHARP_EV}. */
+export const SLOW_EV = 0.4;
 
 /** An edge must stand this many standard deviations above the noise to be considered. */
 const LEAST_SIGNIFICANCE = 6;
@@ -20,12 +22,17 @@ const LEAST_SIGNIFICANCE = 6;
  *
  * @param energiesEv Energies, ascending, shape (n).
  * @param counts Counts, shape (n).
+ * @param sideEv Width on each side, eV. Default: 0.1 eV.
  * @returns Rises (positive) and falls (negative), ascending in energy.
  */
-export function edgeCandidates(energiesEv: Float64Array, counts: Float64Array): EdgeCandidate[] {
+export function edgeCandidates(
+  energiesEv: Float64Array,
+  counts: Float64Array,
+  sideEv: number = SHARP_EV,
+): EdgeCandidate[] {
   const n = counts.length;
   const step = (energiesEv[n - 1] - energiesEv[0]) / (n - 1);
-  const side = Math.max(2, Math.min(Math.round(SIDE_EV / step), Math.floor(n / 4)));
+  const side = Math.max(2, Math.min(Math.round(sideEv / step), Math.floor(n / 4)));
   const sums = new Float64Array(n + 1);
   for (let i = 0; i < n; i++) sums[i + 1] = sums[i] + counts[i];
   const change = new Float64Array(n);

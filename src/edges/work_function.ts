@@ -3,7 +3,14 @@ import { BOLTZMANN_EV_PER_K } from "../data/mod.ts";
 import { fitCutoff, type FittedEdge } from "./cutoff.ts";
 import { type EnergyReference, energyReferences } from "./energy_reference.ts";
 import { fitFermiEdge, type FittedFermiEdge } from "./fermi.ts";
-import { cutoffCandidate, type EdgeCandidate, edgeCandidates, meanCounts } from "./locate.ts";
+import {
+  cutoffCandidate,
+  type EdgeCandidate,
+  edgeCandidates,
+  meanCounts,
+  SHARP_EV,
+  SLOW_EV,
+} from "./locate.ts";
 import type { Satellite } from "./satellites.ts";
 import { type FittedValenceEdge, fitValenceEdge } from "./valence.ts";
 
@@ -175,14 +182,9 @@ export function measureWorkFunction(
   const warn = (code: string, message: string, place = ""): void =>
     void warnings.push({ code, message, place });
 
-  const searched = chosen.map((region) => ({
-    region,
-    candidates: edgeCandidates(region.energiesEv, region.counts),
-  }));
-
   // Cutoff: in the region with the most significant low edge.
-  const cutoffs = searched.flatMap(({ region, candidates }) => {
-    const candidate = cutoffCandidate(candidates);
+  const cutoffs = chosen.flatMap((region) => {
+    const candidate = cutoffCandidate(edgeCandidates(region.energiesEv, region.counts));
     return candidate ? [{ region, candidate }] : [];
   }).sort((a, b) => b.candidate.significance - a.candidate.significance);
   const cutoffPlace = cutoffs[0];
@@ -196,14 +198,19 @@ export function measureWorkFunction(
     })
     : null;
 
-  // Upper edge: falls of the main line, strongest region first.
-  const falls = searched.flatMap(({ region, candidates }) => {
-    const all = candidates.filter((candidate) => candidate.significance < 0);
-    return all.filter((candidate) => !isGhost(candidate, all, region, satellites)).map((candidate) => ({
-      region,
-      candidate,
-    }));
-  });
+  // Upper edge: falls of the main line; slow and faint ones only where no sharp one is found.
+  const fallsAt = (sideEv: number): Fall[] =>
+    chosen.flatMap((region) => {
+      const all = edgeCandidates(region.energiesEv, region.counts, sideEv).filter((edge) =>
+        edge.significance < 0
+      );
+      return all.filter((candidate) => !isGhost(candidate, all, region, satellites)).map((candidate) => ({
+        region,
+        candidate,
+      }));
+    });
+  const sharpFalls = fallsAt(SHARP_EV);
+  const falls = sharpFalls.length > 0 ? sharpFalls : fallsAt(SLOW_EV);
   const onset = falls.length > 0 ? Math.max(...falls.map((fall) => fall.candidate.energyEv)) : null;
   const references = cutoff === null ? [] : energyReferences(
     {
@@ -297,7 +304,7 @@ export function measureWorkFunction(
     shape,
     photonUncertainty,
     photonNote: line
-      ? `${line.name} ${line.energyEv} eV, used ${photonEnergyEv} eV`
+      ? `${line.name} is ${line.energyEv.toFixed(5)} eV, used ${photonEnergyEv.toFixed(5)} eV`
       : "not known, not included",
   });
   const estimate = (quantity: BudgetTerm["enters"][number], value: number): Estimate => ({

@@ -1,13 +1,14 @@
 import { getNodeValue, type ParseError, parseTree, printParseErrorCode, stripComments } from "jsonc-parser";
 import { z } from "zod";
 import { cannot, InputError, type Problem, suggest } from "../base/mod.ts";
+import { LAMP_NAMES, MATERIAL_IDS } from "../data/mod.ts";
 import { applyOverrides } from "./overrides.ts";
 import type { Scenario } from "./types.ts";
 
 const energy = (low: number, high: number) => z.number().min(low).max(high);
 
 const sample = z.strictObject({
-  material: z.string().min(1),
+  material: z.enum(MATERIAL_IDS),
   face: z.string().min(1).default("polycrystalline"),
   temperatureK: z.number().min(0).max(3000).default(300),
   workFunctionEv: energy(0.5, 10).nullable().default(null),
@@ -22,7 +23,7 @@ const photonFluxPerS = z.number().positive().max(1e20).default(1e10);
 const light = z.discriminatedUnion("kind", [
   z.strictObject({
     kind: z.literal("lamp"),
-    lamp: z.string().min(1),
+    lamp: z.enum(LAMP_NAMES),
     satellites: z.boolean().default(true),
     photonFluxPerS,
   }),
