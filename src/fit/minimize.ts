@@ -1,6 +1,6 @@
 import { levenbergMarquardt } from "ml-levenberg-marquardt";
-import { EigenvalueDecomposition, Matrix } from "ml-matrix";
 import { cannot } from "../base/mod.ts";
+import { dot, tangent } from "./tangent.ts";
 
 /** One parameter of a fit. */
 export interface FitParameter {
@@ -12,21 +12,29 @@ export interface FitParameter {
   readonly lower?: number;
   /** Upper bound. Default: none. */
   readonly upper?: number;
-  /** Typical size, which sets the steps of the numerical derivatives. Default: |start|, or 1 where that is 0. */
+  /**
+   * Typical size, > 0; with |value|, where that is larger, it sets the steps of the numerical derivatives. Default:
+   * |start|, or 1 where that is 0.
+   */
   readonly scale?: number;
+  /** `true` when the value stays at its start. Default: false. */
+  readonly fixed?: boolean;
 }
 
 /** A weighted least-squares problem. */
 export interface FitProblem {
   /** Parameters, in the order the model takes them. */
   readonly parameters: readonly FitParameter[];
-  /** Fills `out` with the model values, shape (n). */
+  /** Fills `out` with the model values, shape (n); never called outside the bounds. */
   readonly model: (parameters: Float64Array, out: Float64Array) => void;
   /** Data, shape (n). */
   readonly data: Float64Array;
   /** Standard deviations of the data, each > 0, shape (n). */
   readonly sigma: Float64Array;
-  /** Largest last step, in standard errors, that counts as converged. Default: 1e-6. */
+  /**
+   * Largest distance to the minimum, in standard errors, from which the last step is taken. Standard errors count as
+   * larger by sqrt(chi-square / degrees of freedom) where that is above 1. Default: 1e-8.
+   */
   readonly tolerance?: number;
 }
 
@@ -37,32 +45,40 @@ export interface FitResult {
   /** Best values, shape (p). */
   readonly values: Float64Array;
   /**
-   * Covariance, row by row, shape (p x p): the inverse of J^T W J, not scaled by chi-square. Rows of parameters at a bound
-   * are zero.
+   * Covariance, row by row, shape (p x p): the inverse of J^T W J at the best point, not scaled by chi-square. Rows and
+   * columns of parameters that are fixed or at a bound are zero; all are zero when the data do not determine a parameter.
    */
   readonly covariance: Float64Array;
-  /** Square roots of the diagonal, shape (p); Infinity for parameters at a bound or not determined by the data. */
+  /**
+   * Standard errors, shape (p): square roots of the diagonal of the covariance; 0 for fixed parameters, Infinity for
+   * those at a bound, and Infinity for all when the data do not determine one of them. Never NaN.
+   */
   readonly standardErrors: Float64Array;
   /** Weighted sum of squared residuals. */
   readonly chiSquare: number;
-  /** Data minus parameters not at a bound. */
+  /** Data minus parameters that are neither fixed nor at a bound. */
   readonly degreesOfFreedom: number;
   /** Model at the best point, shape (n). */
   readonly fitted: Float64Array;
   /**
-   * `true` when the last step was below the tolerance and the covariance exists. `false` usually means that the model
-   * cannot tell its parameters apart or that the start was far off: fix a parameter or start closer.
+   * `true` when the distance to the minimum is within the tolerance, or cannot be lowered and is below 0.001 standard
+   * errors, and the covariance exists. `false` usually means that the model cannot tell its parameters apart or that the
+   * start was far off: fix a parameter or start closer.
    */
   readonly converged: boolean;
   /** Names of parameters at a bound. */
   readonly atBound: readonly string[];
-  /** Why it stopped, in one sentence. */
+  /** Why it stopped or what is wrong, in one sentence. */
   readonly reason: string;
   /** Evaluations of the model. */
   readonly evaluations: number;
 }
 
-const DEFAULT_TOLERANCE = 1e-6;
+const DEFAULT_TOLERANCE = 1e-8;
+/** Distance that is good enough where rounding errors forbid a smaller one: Bates & Watts (1981). */
+const CLOSE = 1e-3;
+/** A relative change of chi-square that is nothing but rounding errors. */
+const ROUNDING = 1e-14;
 const MOST_STEPS = 200;
 /** Central differences are best near the cube root of the rounding error. */
 const DERIVATIVE_STEP = 6e-6;
@@ -70,9 +86,15 @@ const DAMPING_START = 1e-3;
 const DAMPING_UP = 6;
 const DAMPING_DOWN = 8;
 const DAMPING_LEAST = 1e-14;
-const DAMPING_MOST = 1e10;
-/** Smallest eigenvalue of the normalized J^T J, relative to the largest, below which directions are not determined. */
-const SINGULAR = 1e-13;
+const DAMPING_MOST = 1e8;
+
+/** Parameters with the whitened model and chi-square there; chi-square is not finite where the model is not. */
+interface Point {
+  readonly values: Float64Array;
+  readonly model: Float64Array;
+  readonly residuals: Float64Array;
+  readonly chiSquare: number;
+}
 
 /**
  * Weighted nonlinear least squares by the Levenberg-Marquardt method (D. Marquardt, J. Soc. Indust. Appl. Math. 11, 431
@@ -81,12 +103,15 @@ const SINGULAR = 1e-13;
  * Each step is one iteration of the library ml-levenberg-marquardt on residuals divided by their standard deviations and
  * on parameters scaled by the columns of the Jacobian, which makes its damping Marquardt's. Whether a step is taken, the
  * damping, bounds, convergence and covariance are decided here, since the library never rejects a step and knows no
- * covariance.
+ * covariance. A step to where the model is not finite is rejected.
+ *
+ * Convergence: the residuals are orthogonal to the tangent plane of the model, whatever the scales of the parameters (D.
+ * Bates, D. Watts, Technometrics 23, 179 (1981)).
  *
  * @param problem Model, data and start values.
  * @returns Best values with covariance; a poor fit is told by `converged` and `reason`, not thrown.
- * @throws {RangeError} If there are fewer data than parameters, a standard deviation is not > 0, a start value is outside
- * its bounds, or the model is not finite at the start.
+ * @throws {RangeError} If there are fewer data than free parameters or than 2, a standard deviation is not > 0, a start
+ * value is outside its bounds, a name is used twice, or the model is not finite at the start.
  * @example A straight line through three points
  * ```ts
  * import { minimize } from "@twoedge/twoedge";
@@ -102,177 +127,169 @@ const SINGULAR = 1e-13;
  */
 export function minimize(problem: FitProblem): FitResult {
   check(problem);
-  const { parameters, data, sigma } = problem;
-  const tolerance = problem.tolerance ?? DEFAULT_TOLERANCE;
-  const count = parameters.length;
-  const n = data.length;
+  const { parameters, sigma, tolerance = DEFAULT_TOLERANCE } = problem;
+  const n = problem.data.length;
   const lower = parameters.map((parameter) => parameter.lower ?? -Infinity);
   const upper = parameters.map((parameter) => parameter.upper ?? Infinity);
   const scales = parameters.map(({ scale, start }) => scale ?? (start === 0 ? 1 : Math.abs(start)));
+  const data = problem.data.map((value, i) => value / sigma[i]);
+  const indices = Float64Array.from({ length: n }, (_, i) => i);
   let evaluations = 0;
 
-  function evaluate(values: Float64Array): Float64Array {
-    const out = new Float64Array(n);
-    problem.model(values, out);
+  function evaluate(values: Float64Array): Point {
+    const model = new Float64Array(n);
+    problem.model(values, model);
     evaluations++;
-    for (let i = 0; i < n; i++) out[i] /= sigma[i];
-    return out;
-  }
-  const whiteData = data.map((value, i) => value / sigma[i]);
-  const sumOfSquares = (model: Float64Array): number => {
-    let sum = 0;
-    for (let i = 0; i < n; i++) sum += (whiteData[i] - model[i]) ** 2;
-    return sum;
-  };
-
-  let values: Float64Array = Float64Array.from(parameters, (parameter) => parameter.start);
-  let model = evaluate(values);
-  let chiSquare = sumOfSquares(model);
-  if (!Number.isFinite(chiSquare)) {
-    throw new RangeError(cannot("fit", "the model must be finite at the start values", values.join(", ")));
+    const residuals = new Float64Array(n);
+    for (let i = 0; i < n; i++) {
+      model[i] /= sigma[i];
+      residuals[i] = data[i] - model[i];
+    }
+    return { values, model, residuals, chiSquare: dot(residuals, residuals) };
   }
 
-  /** Derivatives of the whitened model, one column per parameter; one-sided at a bound. */
-  function jacobian(): Float64Array[] {
-    return parameters.map((_, j) => {
-      const h = DERIVATIVE_STEP * Math.max(scales[j], Math.abs(values[j]));
-      const up = Math.min(values[j] + h, upper[j]);
-      const down = Math.max(values[j] - h, lower[j]);
-      const high = evaluate(values.with(j, up));
-      const low = evaluate(values.with(j, down));
-      for (let i = 0; i < n; i++) high[i] = (high[i] - low[i]) / (up - down);
-      return high;
+  /** Derivatives of the whitened model by central differences; one-sided at a bound or beside a value not finite. */
+  function jacobian(at: Point): Float64Array[] {
+    return parameters.map(({ fixed }, j) => {
+      const column = new Float64Array(n);
+      if (fixed) return column;
+      const h = DERIVATIVE_STEP * Math.max(scales[j], Math.abs(at.values[j]));
+      const [high, low] = [h, -h].map((change) => {
+        const value = clamp(at.values[j] + change, lower[j], upper[j]);
+        const beside = value === at.values[j] ? at : evaluate(at.values.with(j, value));
+        return Number.isFinite(beside.chiSquare) ? beside : at;
+      });
+      const width = high.values[j] - low.values[j];
+      if (width > 0) { for (let i = 0; i < n; i++) column[i] = (high.model[i] - low.model[i]) / width; }
+      return column;
     });
   }
 
-  /** Parameters that are not pressed against a bound by the gradient. */
-  function freeParameters(columns: Float64Array[]): number[] {
-    return parameters.flatMap((_, j) => {
-      let descent = 0;
-      for (let i = 0; i < n; i++) descent += columns[j][i] * (whiteData[i] - model[i]);
-      const held = (values[j] <= lower[j] && descent <= 0) || (values[j] >= upper[j] && descent >= 0);
-      return held ? [] : [j];
+  /** Parameters that may move: not fixed, not pressed against a bound by the gradient. */
+  function freeParameters(at: Point, columns: readonly Float64Array[]): number[] {
+    return parameters.flatMap(({ fixed }, j) => {
+      const descent = dot(columns[j], at.residuals);
+      const held = (at.values[j] <= lower[j] && descent <= 0) || (at.values[j] >= upper[j] && descent >= 0);
+      return fixed || held ? [] : [j];
     });
   }
 
+  /** One damped step of the library; its parameters are distances from the point, in lengths of the columns. */
+  function libraryStep(
+    from: Point,
+    free: readonly number[],
+    columns: readonly Float64Array[],
+    norms: readonly number[],
+    damping: number,
+  ): Point {
+    let latest = from;
+    levenbergMarquardt(
+      { x: indices, y: data },
+      (distances: number[]) => {
+        const values = from.values.slice();
+        free.forEach((j, f) => values[j] = clamp(values[j] + distances[f] / norms[f], lower[j], upper[j]));
+        latest = values.every((value, j) => value === from.values[j]) ? from : evaluate(values);
+        const { model } = latest;
+        return (i: number) => model[i];
+      },
+      {
+        initialValues: free.map(() => 0),
+        damping,
+        maxIterations: 1,
+        errorTolerance: 0,
+        minValues: free.map((j, f) => (lower[j] - from.values[j]) * norms[f]),
+        maxValues: free.map((j, f) => (upper[j] - from.values[j]) * norms[f]),
+        jacobianFunction: () => (i: number) => columns.map((column, f) => column[i] / norms[f]),
+      },
+    );
+    // The library returns its start where the step does not help, but what it tried is what it evaluated last.
+    return latest;
+  }
+
+  let point = evaluate(Float64Array.from(parameters, (parameter) => parameter.start));
+  const wrong = point.residuals.findIndex((value) => !Number.isFinite(value * value));
+  if (wrong >= 0) {
+    throw new RangeError(
+      cannot("fit", `model value ${wrong} must be finite at the start`, point.model[wrong] * sigma[wrong]),
+    );
+  }
+  let columns = jacobian(point);
   let damping = DAMPING_START;
   let settled = false;
   let stopped = `no minimum after ${MOST_STEPS} steps`;
-  let columns = jacobian();
+  let previous = { offset: Infinity, fall: Infinity };
   for (let step = 0; step < MOST_STEPS && !settled; step++) {
-    const free = freeParameters(columns);
-    const norms = free.map((j) => Math.sqrt(columns[j].reduce((sum, value) => sum + value * value, 0)) || 1);
+    const free = freeParameters(point, columns);
     if (free.length === 0) {
       settled = true;
       break;
     }
-    let accepted = false;
-    while (!accepted && damping <= DAMPING_MOST) {
-      const trial = libraryStep(free, norms, damping);
-      const moved = free.reduce(
-        (most, j, f) => Math.max(most, Math.abs(trial.values[j] - values[j]) * norms[f]),
-        0,
-      );
-      if (trial.chiSquare <= chiSquare) {
-        accepted = true;
-        damping = Math.max(DAMPING_LEAST, damping / DAMPING_DOWN);
-        // A column norm is one over the standard error that a parameter would have alone.
-        settled = moved < tolerance;
-        values = trial.values;
-        model = trial.model;
-        chiSquare = trial.chiSquare;
-      } else if (moved < tolerance) {
-        accepted = true;
-        settled = true;
-      } else {
-        damping *= DAMPING_UP;
-      }
+    const freeColumns = free.map((j) => columns[j]);
+    const { norms, offset } = tangent(freeColumns, point.residuals);
+    const inflation = Math.sqrt(Math.max(1, point.chiSquare / Math.max(1, n - free.length)));
+    const isClose = offset <= CLOSE * inflation;
+    const noise = ROUNDING * point.chiSquare;
+    settled = offset <= tolerance * inflation ||
+      (isClose && offset >= previous.offset && previous.fall <= noise);
+
+    // Close to the minimum chi-square no longer falls visibly, but the distance does.
+    const highest = point.chiSquare + (isClose ? noise : -noise);
+    let next = libraryStep(point, free, freeColumns, norms, damping);
+    // Also true of NaN.
+    while (!(next.chiSquare <= highest) && !settled && damping < DAMPING_MOST) {
+      damping *= DAMPING_UP;
+      next = libraryStep(point, free, freeColumns, norms, damping);
     }
-    if (!accepted) {
+    if (next.chiSquare <= highest) {
+      previous = { offset, fall: point.chiSquare - next.chiSquare };
+      damping = Math.max(DAMPING_LEAST, damping / DAMPING_DOWN);
+      point = next;
+      columns = jacobian(point);
+    } else if (!settled) {
       stopped = "no step lowers chi-square";
       break;
     }
-    columns = jacobian();
-  }
-  return finish();
-
-  /** One damped step of the library from the current point, on scaled free parameters. */
-  function libraryStep(
-    free: readonly number[],
-    norms: readonly number[],
-    lambda: number,
-  ): { values: Float64Array; model: Float64Array; chiSquare: number } {
-    const full = (scaled: ArrayLike<number>): Float64Array => {
-      const next = values.slice();
-      free.forEach((j, f) => next[j] = Math.min(upper[j], Math.max(lower[j], scaled[f] / norms[f])));
-      return next;
-    };
-    const start = free.map((j, f) => values[j] * norms[f]);
-    let latest: { values: Float64Array; model: Float64Array } = { values, model };
-    const { parameterValues } = levenbergMarquardt(
-      { x: Float64Array.from({ length: n }, (_, i) => i), y: whiteData },
-      (scaled: number[]) => {
-        const at = full(scaled);
-        const same = at.every((value, j) => value === values[j]);
-        latest = same ? { values, model } : { values: at, model: evaluate(at) };
-        const { model: current } = latest;
-        return (i: number) => current[i];
-      },
-      {
-        initialValues: start,
-        damping: lambda,
-        maxIterations: 1,
-        errorTolerance: 0,
-        minValues: free.map((j, f) => lower[j] * norms[f]),
-        maxValues: free.map((j, f) => upper[j] * norms[f]),
-        jacobianFunction: () => (i: number) => free.map((j, f) => columns[j][i] / norms[f]),
-      },
-    );
-    // The library returns its start where the step does not help; then the step it tried is the latest evaluation.
-    const taken = parameterValues.every((value, f) => value === start[f]) ? latest : {
-      values: full(parameterValues),
-      model: latest.model,
-    };
-    const squares = sumOfSquares(taken.model);
-    return { ...taken, chiSquare: Number.isNaN(squares) ? Infinity : squares };
   }
 
-  function finish(): FitResult {
-    const free = freeParameters(columns).filter((j) => values[j] > lower[j] && values[j] < upper[j]);
-    const { covariance, undetermined } = covarianceOf(columns, free, count);
-    const standardErrors = Float64Array.from(
-      { length: count },
-      (_, j) => free.includes(j) && undetermined === null ? Math.sqrt(covariance[j * count + j]) : Infinity,
-    );
-    const atBound = parameters.filter((_, j) => values[j] <= lower[j] || values[j] >= upper[j]).map((
-      { name },
-    ) => name);
-    const lost = undetermined === null ? null : parameters[undetermined].name;
-    return {
-      names: parameters.map(({ name }) => name),
-      values,
-      covariance,
-      standardErrors,
-      chiSquare,
-      degreesOfFreedom: n - free.length,
-      fitted: model.map((value, i) => value * sigma[i]),
-      converged: settled && lost === null,
-      atBound,
-      reason: lost !== null
-        ? `the data do not determine ${lost}`
-        : settled
-        ? atBound.length > 0 ? `converged with ${atBound.join(", ")} at a bound` : "converged"
-        : stopped,
-      evaluations,
-    };
-  }
+  const count = parameters.length;
+  const isAtBound = parameters.map(({ fixed }, j) =>
+    !fixed && (point.values[j] <= lower[j] || point.values[j] >= upper[j])
+  );
+  const free = parameters.flatMap(({ fixed }, j) => fixed || isAtBound[j] ? [] : [j]);
+  const plane = free.length === 0 ? null : tangent(free.map((j) => columns[j]), point.residuals);
+  const lost = plane !== null && plane.covariance === null ? parameters[free[plane.weakest]].name : null;
+  const covariance = new Float64Array(count * count);
+  const standardErrors = Float64Array.from(parameters, ({ fixed }) => fixed && lost === null ? 0 : Infinity);
+  free.forEach((a, row) => {
+    if (!plane?.covariance) return;
+    free.forEach((b, column) => covariance[a * count + b] = plane.covariance!.get(row, column));
+    standardErrors[a] = Math.sqrt(covariance[a * count + a]);
+  });
+  const atBound = parameters.filter((_, j) => isAtBound[j]).map(({ name }) => name);
+  const success = atBound.length > 0 ? `converged with ${atBound.join(", ")} at a bound` : "converged";
+  return {
+    names: parameters.map(({ name }) => name),
+    values: point.values,
+    covariance,
+    standardErrors,
+    chiSquare: point.chiSquare,
+    degreesOfFreedom: n - free.length,
+    fitted: point.model.map((value, i) => value * sigma[i]),
+    converged: settled && lost === null,
+    atBound,
+    reason: lost !== null ? `the data do not determine ${lost}` : settled ? success : stopped,
+    evaluations,
+  };
+}
+
+function clamp(value: number, lower: number, upper: number): number {
+  return Math.min(upper, Math.max(lower, value));
 }
 
 function check({ parameters, data, sigma }: FitProblem): void {
-  if (data.length < parameters.length || data.length < 2) {
-    throw new RangeError(
-      cannot("fit", `there must be at least ${Math.max(2, parameters.length)} data`, data.length),
-    );
+  const least = Math.max(2, parameters.filter(({ fixed }) => !fixed).length);
+  if (data.length < least) {
+    throw new RangeError(cannot("fit", `there must be at least ${least} data`, data.length));
   }
   const bad = sigma.findIndex((value) => !(value > 0) || !Number.isFinite(value));
   if (sigma.length !== data.length || bad >= 0) {
@@ -282,52 +299,17 @@ function check({ parameters, data, sigma }: FitProblem): void {
   }
   const wrong = data.findIndex((value) => !Number.isFinite(value));
   if (wrong >= 0) throw new RangeError(cannot("fit", `datum ${wrong} must be finite`, data[wrong]));
-  for (const { name, start, lower = -Infinity, upper = Infinity } of parameters) {
-    if (!(start >= lower && start <= upper && lower < upper)) {
+  const names = new Set<string>();
+  for (const { name, start, lower = -Infinity, upper = Infinity, scale = 1 } of parameters) {
+    if (names.has(name)) throw new RangeError(cannot("fit", "parameter names must be unique", name));
+    names.add(name);
+    if (!(Number.isFinite(start) && start >= lower && start <= upper && lower < upper)) {
       throw new RangeError(cannot("fit", `the start of ${name} must be in ${lower}..${upper}`, start));
     }
-  }
-}
-
-/** Inverse of J^T J over the free parameters by eigenvalues of the matrix with unit diagonal. */
-function covarianceOf(
-  columns: readonly Float64Array[],
-  free: readonly number[],
-  count: number,
-): { covariance: Float64Array; undetermined: number | null } {
-  const covariance = new Float64Array(count * count);
-  if (free.length === 0) return { covariance, undetermined: null };
-  const norms = free.map((j) => Math.sqrt(columns[j].reduce((sum, value) => sum + value * value, 0)));
-  const flat = norms.findIndex((norm) => !(norm > 0));
-  if (flat >= 0) return { covariance, undetermined: free[flat] };
-  const normalized = Matrix.zeros(free.length, free.length);
-  for (let a = 0; a < free.length; a++) {
-    for (let b = 0; b <= a; b++) {
-      let sum = 0;
-      for (let i = 0; i < columns[0].length; i++) sum += columns[free[a]][i] * columns[free[b]][i];
-      normalized.set(a, b, sum / norms[a] / norms[b]);
-      normalized.set(b, a, sum / norms[a] / norms[b]);
+    if (!(scale > 0 && scale < Infinity)) {
+      throw new RangeError(cannot("fit", `the scale of ${name} must be > 0`, scale));
     }
   }
-  const { realEigenvalues, eigenvectorMatrix } = new EigenvalueDecomposition(normalized, {
-    assumeSymmetric: true,
-  });
-  const largest = Math.max(...realEigenvalues);
-  const weak = realEigenvalues.findIndex((value) => !(value > SINGULAR * largest));
-  if (weak >= 0) {
-    const direction = eigenvectorMatrix.getColumn(weak).map(Math.abs);
-    return { covariance, undetermined: free[direction.indexOf(Math.max(...direction))] };
-  }
-  for (let a = 0; a < free.length; a++) {
-    for (let b = 0; b < free.length; b++) {
-      let sum = 0;
-      realEigenvalues.forEach((value, e) => {
-        sum += (eigenvectorMatrix.get(a, e) * eigenvectorMatrix.get(b, e)) / value;
-      });
-      covariance[free[a] * count + free[b]] = sum / norms[a] / norms[b];
-    }
-  }
-  return { covariance, undetermined: null };
 }
 
 /**
@@ -336,17 +318,22 @@ function covarianceOf(
  * @param fit The fit.
  * @param nameA One parameter.
  * @param nameB Another.
- * @returns -1..1; NaN where one of them has no standard error.
+ * @returns Coefficient, -1..1.
+ * @throws {RangeError} If a name is unknown, or the parameter has no variance: fixed, at a bound or not determined.
  */
 export function correlation(fit: FitResult, nameA: string, nameB: string): number {
+  const count = fit.names.length;
   const [a, b] = [nameA, nameB].map((name) => {
     const index = fit.names.indexOf(name);
     if (index < 0) {
       throw new RangeError(cannot("correlate", `the name must be one of ${fit.names.join(", ")}`, name));
     }
+    const variance = fit.covariance[index * count + index];
+    if (!(variance > 0)) {
+      throw new RangeError(cannot("correlate", `${name} must have a variance > 0`, variance));
+    }
     return index;
   });
-  const count = fit.names.length;
   return fit.covariance[a * count + b] /
     Math.sqrt(fit.covariance[a * count + a] * fit.covariance[b * count + b]);
 }

@@ -1,4 +1,4 @@
-import { erfc } from "../math/mod.ts";
+import { cannot } from "../base/mod.ts";
 import type { FitResult } from "./minimize.ts";
 
 /** Result of a runs test. */
@@ -7,6 +7,8 @@ export interface RunsTest {
   readonly runs: number;
   /** Runs expected of a random order. */
   readonly expectedRuns: number;
+  /** Runs above the expected number, in standard deviations; negative when too few. 0 where there is no spread. */
+  readonly z: number;
   /** Probability of as few runs or fewer by chance. */
   readonly probability: number;
 }
@@ -15,7 +17,7 @@ export interface RunsTest {
 export interface ResidualTests {
   /** Pearson chi-square. */
   readonly chiSquare: number;
-  /** Degrees of freedom. */
+  /** Degrees of freedom, at least 1 so that an exact solution has a reduced chi-square. */
   readonly degreesOfFreedom: number;
   /** Chi-square over degrees of freedom. */
   readonly reducedChiSquare: number;
@@ -44,7 +46,11 @@ export interface ResidualTests {
 export function chiSquareProbability(chiSquare: number, degreesOfFreedom: number): number {
   if (!(chiSquare >= 0) || !(degreesOfFreedom > 0)) {
     throw new RangeError(
-      `Cannot give a probability as chi-square must be >= 0 and its degrees of freedom > 0: current value is ${chiSquare}, ${degreesOfFreedom}`,
+      cannot(
+        "give a probability",
+        "chi-square must be >= 0 and its degrees of freedom > 0",
+        `${chiSquare}, ${degreesOfFreedom}`,
+      ),
     );
   }
   const a = degreesOfFreedom / 2;
@@ -91,27 +97,58 @@ function logGamma(x: number): number {
 /**
  * Runs test: too few runs of one sign mean that the model bends differently from the data.
  *
- * Normal approximation, good for more than about ten residuals of each sign.
+ * Exact, given how many residuals have each sign. Where all have the same sign that test knows nothing; then the signs
+ * are compared with the tosses of a coin.
  *
  * Source: A. Wald, J. Wolfowitz, Ann. Math. Stat. 11, 147 (1940).
  *
  * @param residuals Residuals in order; zeros are left out.
  * @returns Runs and the probability of as few.
+ * @throws {RangeError} If a residual is NaN.
+ * @example Of the 6 orders of two plus and two minus signs, 2 have two runs
+ * ```ts
+ * import { runsTest } from "@twoedge/twoedge";
+ * import assert from "node:assert/strict";
+ * assert.equal(runsTest([0.3, 0.1, -0.2, -0.4]).probability.toFixed(6), "0.333333");
+ * ```
  */
 export function runsTest(residuals: ArrayLike<number>): RunsTest {
   const signs = Array.from(residuals, Math.sign).filter((sign) => sign !== 0);
+  if (signs.some(Number.isNaN)) throw new RangeError(cannot("count runs", "residuals must be numbers", NaN));
+  const total = signs.length;
   const positive = signs.filter((sign) => sign > 0).length;
-  const negative = signs.length - positive;
-  const runs = signs.filter((sign, i) => i === 0 || sign !== signs[i - 1]).length;
-  const total = positive + negative;
-  if (positive === 0 || negative === 0) {
-    return { runs, expectedRuns: runs, probability: total > 1 ? 2 ** (1 - total) : 1 };
+  const negative = total - positive;
+  const runs = signs.filter((sign, i) => sign !== signs[i - 1]).length;
+  if (total < 2) return { runs, expectedRuns: runs, z: 0, probability: 1 };
+  if (runs === 1) {
+    const expectedRuns = (total + 1) / 2;
+    const z = (runs - expectedRuns) / Math.sqrt((total - 1) / 4);
+    return { runs, expectedRuns, z, probability: 2 ** (1 - total) };
   }
   const product = 2 * positive * negative;
   const expectedRuns = 1 + product / total;
   const variance = (product * (product - total)) / (total * total * (total - 1));
-  const z = variance > 0 ? (runs + 0.5 - expectedRuns) / Math.sqrt(variance) : 0;
-  return { runs, expectedRuns, probability: 0.5 * erfc(-z * Math.SQRT1_2) };
+  const z = variance > 0 ? (runs - expectedRuns) / Math.sqrt(variance) : 0;
+  return { runs, expectedRuns, z, probability: fewRunsProbability(runs, positive, negative) };
+}
+
+/** Probability of at most `runs` runs among all orders of the signs. */
+function fewRunsProbability(runs: number, positive: number, negative: number): number {
+  const logFactorials = [0];
+  for (let n = 1; n <= positive + negative; n++) logFactorials.push(logFactorials[n - 1] + Math.log(n));
+  const logChoose = (n: number, k: number): number =>
+    k > n ? -Infinity : logFactorials[n] - logFactorials[k] - logFactorials[n - k];
+  const all = logChoose(positive + negative, positive);
+  /** Share of orders with these numbers of runs that begin with a given sign. */
+  const share = (positiveRuns: number, negativeRuns: number): number =>
+    Math.exp(logChoose(positive - 1, positiveRuns - 1) + logChoose(negative - 1, negativeRuns - 1) - all);
+  let probability = 0;
+  for (let n = 2; n <= runs; n++) {
+    const more = Math.ceil(n / 2);
+    const fewer = n - more;
+    probability += share(more, fewer) + share(fewer, more);
+  }
+  return Math.min(1, probability);
 }
 
 /**

@@ -47,6 +47,83 @@ Deno.test("minimizePoisson() is unbiased at one count per channel where weights 
   assert.throws(() => assertMean(mean(weighted), error, 1, "weights from counts"));
 });
 
+/** A peak on a background of a tenth of a count, with invented counts. */
+const PEAK_COUNTS = Float64Array.of(0, 0, 1, 0, 0, 2, 5, 9, 6, 3, 0, 0, 0, 1, 0, 0);
+const PEAK_PARAMETERS = [
+  { name: "height", start: 6 },
+  { name: "position", start: 6.5 },
+  { name: "width", start: 1.5 },
+  { name: "base", start: 0.1 },
+];
+const peak = (p: Float64Array, out: Float64Array): void =>
+  out.forEach((_, i) => out[i] = p[0] * Math.exp(-(((i - p[1]) / p[2]) ** 2)) + p[3]);
+
+Deno.test("minimizePoisson() solves the score equations of a peak on few counts", () => {
+  const score = (values: Float64Array): number[] => {
+    const [height, position, width, base] = values;
+    const sums = [0, 0, 0, 0];
+    PEAK_COUNTS.forEach((count, i) => {
+      const u = (i - position) / width;
+      const shape = Math.exp(-u * u);
+      const slopes = [shape, height * shape * 2 * u / width, height * shape * 2 * u * u / width, 1];
+      slopes.forEach((slope, j) => sums[j] += (count / (height * shape + base) - 1) * slope);
+    });
+    return sums;
+  };
+  const problem = { parameters: PEAK_PARAMETERS, model: peak, data: PEAK_COUNTS };
+  const fit = minimizePoisson(problem);
+  assert.ok(fit.converged, fit.reason);
+  assert.ok(
+    fit.values[3] > 0.05,
+    "the background is above the least variance, where the equations are exact",
+  );
+  // A score times the standard error is the distance to the root in standard errors, of one parameter alone.
+  score(fit.values).forEach((sum, j) =>
+    assertClose(sum * fit.standardErrors[j], 0, { absolute: 5e-3 }, `score ${j}`)
+  );
+  const neyman = minimize({ ...problem, sigma: PEAK_COUNTS.map((count) => Math.sqrt(Math.max(1, count))) });
+  assert.ok(score(neyman.values).some((sum, j) => Math.abs(sum * fit.standardErrors[j]) > 0.1));
+});
+
+Deno.test("minimizePoisson() is at the minimum of its deviance, above and below the least variance", () => {
+  const line = (p: Float64Array, out: Float64Array): void => out.forEach((_, i) => out[i] = p[0] * i / 40);
+  const data = Float64Array.of(0, 0, 0, 1, 0, 0, 0, 0, 0, 0);
+  const parameters = [{ name: "slope", start: 1 }];
+  const fit = minimizePoisson({ parameters, model: line, data });
+  assert.ok(fit.converged, fit.reason);
+  assert.ok(fit.fitted[1] < 0.05 && fit.fitted[9] > 0.05);
+  const devianceAt = (slope: number): number =>
+    minimizePoisson({ parameters: [{ name: "slope", start: slope, fixed: true }], model: line, data })
+      .deviance;
+  // The standard error is where the deviance has risen by about 1, so a tenth of it shows the minimum clearly.
+  for (const change of [-0.1, 0.1]) {
+    assert.ok(devianceAt(fit.values[0] + change * fit.standardErrors[0]) > fit.deviance);
+  }
+});
+
+Deno.test("minimizePoisson() of an empty spectrum is zero with the error of the least variance", () => {
+  const fit = minimizePoisson({
+    parameters: [{ name: "m", start: 1 }],
+    model: (p, out) => void out.fill(p[0]),
+    data: new Float64Array(20),
+  });
+  assert.ok(fit.converged, fit.reason);
+  assertClose(fit.values[0], 0, { absolute: 1e-6 }, "mean");
+  assertClose(fit.standardErrors[0], Math.sqrt(0.05 / 20), { relative: 1e-6 }, "error");
+  // Twice the integral of (0 - m)/0.05 from 0.05 to 0, added to the 2 x 0.05 at 0.05, is 0.05 in each channel.
+  assertClose(fit.deviance, 20 * 0.05, { relative: 1e-6 }, "deviance");
+});
+
+Deno.test("minimizePoisson() passes on that the data do not determine a parameter", () => {
+  const fit = minimizePoisson({
+    parameters: [{ name: "a", start: 1 }, { name: "b", start: 1 }],
+    model: (p, out) => void out.fill(p[0] + p[1]),
+    data: Float64Array.of(3, 5, 4),
+  });
+  assert.equal(fit.converged, false);
+  assert.match(fit.reason, /do not determine [ab]/);
+});
+
 Deno.test("minimizePoisson() gives the closed-form deviance", () => {
   // 2 sum [m - n + n ln(n/m)]: S. Baker, R. Cousins, Nucl. Instrum. Meth. 221, 437 (1984); here m = 2.
   const fit = minimizePoisson({
