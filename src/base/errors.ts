@@ -18,11 +18,16 @@ export interface Problem {
  * ```
  */
 export class InputError extends SyntaxError {
+  /** Always `InputError`. */
   override readonly name = "InputError";
   /** All problems found, in the order of the input. */
   readonly problems: readonly Problem[];
 
-  /** @param problems At least one problem. */
+  /**
+   * Joins the problems into one message.
+   *
+   * @param problems At least one problem.
+   */
   constructor(problems: readonly Problem[]) {
     super(problems.map((p) => (p.place === "" ? p.message : `${p.message} (at ${p.place})`)).join("\n"));
     this.problems = problems;

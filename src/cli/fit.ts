@@ -1,5 +1,4 @@
-import type { Notice } from "../base/mod.ts";
-import { VERSION } from "../base/mod.ts";
+import { cannot, InputError, type Notice, VERSION } from "../base/mod.ts";
 import { nearestLine } from "../data/mod.ts";
 import {
   type EdgeRegion,
@@ -54,7 +53,7 @@ function edgeRegion(region: SpectrumRegion, file: string, ownFormat: boolean): E
     file,
     energyKind: region.energyKind,
     energiesEv: region.energiesEv,
-    counts: region.counts,
+    counts: poissonCounts(region, file),
     photonEnergyEv: region.photonEnergyEv,
     biasV: region.biasV,
     asRecorded: ownFormat && region.biasV !== null,
@@ -62,6 +61,23 @@ function edgeRegion(region: SpectrumRegion, file: string, ownFormat: boolean): E
     acceptanceHalfAngleDeg: number("acceptance_half_angle_deg"),
     temperatureK: number("temperature_k"),
   };
+}
+
+/** Counts; a rate (ISO 14976 unit `c/s`) times the time it was collected for. */
+function poissonCounts(region: SpectrumRegion, file: string): Float64Array {
+  if (region.metadata["counts units"] !== "c/s") return region.counts;
+  const { dwellS, sweeps } = region;
+  if (dwellS === null || sweeps === null) {
+    throw new InputError([{
+      place: `${file}, region ${region.label}`,
+      message: cannot(
+        "turn rates into counts",
+        "collection time and number of scans must be in the file when its unit is c/s",
+        `${dwellS ?? "unknown"} s, ${sweeps ?? "unknown"} scans`,
+      ),
+    }]);
+  }
+  return region.counts.map((rate) => rate * dwellS * sweeps);
 }
 
 /**

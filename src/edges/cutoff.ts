@@ -31,6 +31,15 @@ export interface FittedEdge {
   readonly model: string;
 }
 
+/** A fitted secondary cutoff. */
+export interface FittedCutoff extends FittedEdge {
+  /**
+   * How much the counts still rise over the first 0.3 eV above the edge, as a share of the top: a clean step falls.
+   * A large share means a barrier that opens slowly, or several work functions.
+   */
+  readonly lateRise: number;
+}
+
 /** What is known about the cutoff before the fit. */
 export interface CutoffOptions {
   /**
@@ -70,7 +79,7 @@ export function fitCutoff(
   counts: Float64Array,
   candidate: EdgeCandidate,
   options: CutoffOptions,
-): FittedEdge | null {
+): FittedCutoff | null {
   const width = riseWidth(energiesEv, counts, candidate);
   const low = candidate.energyEv - Math.max(BELOW_EV, 3 * width);
   const high = candidate.energyEv + Math.max(ABOVE_EV, 4 * width);
@@ -131,13 +140,16 @@ export function fitCutoff(
     });
     if (withFoot.converged && plain.deviance - withFoot.deviance > FOOT_GAIN) best = withFoot;
   }
-  return fittedEdge(best, window, data, {
+  const [, , flat, fast, slow] = best.values;
+  const topOver = flat + fast * Math.exp(-1) + slow * Math.exp(-FAST_DECAY_EV / SLOW_DECAY_EV);
+  const edge = fittedEdge(best, window, data, {
     stepEv,
     vital: ["position", "sigma"],
     model: `${best === plain ? "step" : "step with exponential foot"} with decaying top${
       options.rampPerEv === null ? "" : " and acceptance ramp"
     }, Gaussian response, sloping background`,
   });
+  return { ...edge, lateRise: Math.max(0, 1 - (flat + fast + slow) / topOver) };
 }
 
 /**

@@ -20,6 +20,8 @@ export interface FittedFermiEdge extends FittedEdge {
   readonly stepCounts: number;
   /** Standard error of that. */
   readonly stepStandardError: number;
+  /** Standard uncertainty of the position from the assumed form of the states, eV. */
+  readonly statesUncertaintyEv: number;
 }
 
 /** Window about the edge, eV: linear states below, background above. */
@@ -28,10 +30,19 @@ const ABOVE_EV = 0.6;
 /** How far above the last satellite's edge the window reaches when the data do. */
 const BEYOND_SATELLITE_EV = 0.4;
 
+/** Curved states must improve twice the log-likelihood by this much: 1 parameter, chance 0.1 % (chi-square table). */
+const CURVE_GAIN = 10.83;
+
 /**
- * Fits a Fermi edge: linear density of states times Fermi-Dirac at known temperature, folded with a Gaussian, on a
- * background, with satellites as scaled copies of the measured spectrum where the data reach far enough, and a sloping
- * background instead where they do not.
+ * Fits a Fermi edge: smooth density of states times Fermi-Dirac at known temperature, folded with a Gaussian, on a
+ * background, with satellites above as scaled copies of the measured spectrum where the data reach far enough, and a
+ * sloping background instead where they do not. Lines of the lamp just below the main one give second edges in the
+ * window, which are part of the model.
+ *
+ * The states are linear in energy, or quadratic where the counts ask for it (likelihood ratio). Where they do not, the
+ * two positions should differ by no more than `sqrt(u_quadratic^2 - u_linear^2)`, the standard deviation of the
+ * difference of nested estimators (J. Hausman, Econometrica 46, 1251 (1978)); what exceeds it is the uncertainty of
+ * the choice.
  *
  * @param energiesEv All energies, ascending, eV.
  * @param counts All counts.
@@ -66,6 +77,9 @@ export function fitFermiEdge(
     ? ghosts(options.satellites, energiesEv, counts, window)
     : { parameters: [], copies: [] };
   const floor = meanCounts(window, data, high - BEYOND_SATELLITE_EV, high);
+  const belowMain = options.satellites.filter((satellite) =>
+    satellite.shiftEv < 0 && satellite.shiftEv > -BELOW_EV
+  );
   const parameters: FitParameter[] = [
     { name: "position", start: center, lower: window[0], upper: window[window.length - 1], scale: 0.05 },
     {
@@ -84,25 +98,59 @@ export function fitFermiEdge(
       scale: Math.max(above, 1),
     },
     ...(withSatellites ? copied.parameters : [{ name: "baseSlope", start: 0, scale: Math.max(above, 1) }]),
+    ...belowMain.map((satellite, i) => ({
+      name: `lineBelow${i + 1}`,
+      start: satellite.relativeIntensity,
+      lower: 0,
+      upper: 2,
+      scale: satellite.relativeIntensity,
+    })),
   ];
-  const shape = { occupation: 0, slopeEv: 0 };
+  const firstBelow = parameters.length - belowMain.length;
+  const shape = { occupation: 0, slopeEv: 0, curveEv2: 0 };
   const model = (p: Float64Array, out: Float64Array): void => {
     const edgeShape = broadenedFermiEdge(options.thermalEnergyEv, p[1]);
+    const curve = p.length > parameters.length ? p[parameters.length] : 0;
     for (let i = 0; i < window.length; i++) {
       const x = window[i] - p[0];
       edgeShape(x, shape);
-      out[i] = p[2] * shape.occupation + p[3] * shape.slopeEv + p[4];
+      out[i] = p[2] * shape.occupation + p[3] * shape.slopeEv + curve * shape.curveEv2 + p[4];
       if (!withSatellites) out[i] += p[5] * x;
       for (let s = 0; s < copied.copies.length; s++) out[i] += p[5 + s] * copied.copies[s][i];
+      for (let s = 0; s < belowMain.length; s++) {
+        edgeShape(x - belowMain[s].shiftEv, shape);
+        out[i] += p[firstBelow + s] *
+          (p[2] * shape.occupation + p[3] * shape.slopeEv + curve * shape.curveEv2);
+      }
     }
   };
-  const fit = minimizePoisson({ parameters, model, data });
+  const linear = minimizePoisson({ parameters, model, data });
+  const curved = minimizePoisson({
+    parameters: [
+      ...parameters.map((parameter, i) => ({ ...parameter, start: linear.values[i] })),
+      { name: "statesCurve", start: 0, scale: height },
+    ],
+    model,
+    data,
+  });
+  const useCurved = curved.converged && linear.deviance - curved.deviance > CURVE_GAIN;
+  const fit = useCurved ? curved : linear;
   const edge = fittedEdge(fit, window, data, {
     stepEv,
     vital: ["position"],
-    model: `linear states x Fermi-Dirac, Gaussian response, ${
+    model: `${useCurved ? "quadratic" : "linear"} states x Fermi-Dirac, Gaussian response, ${
       withSatellites ? `background and ${copied.copies.length} satellites` : "sloping background"
-    }`,
+    }${belowMain.length > 0 ? `, ${belowMain.length} line below` : ""}`,
   });
-  return { ...edge, stepCounts: fit.values[2], stepStandardError: fit.standardErrors[2] };
+  const difference = curved.values[0] - linear.values[0];
+  const expected = curved.standardErrors[0] ** 2 - linear.standardErrors[0] ** 2;
+  const statesUncertaintyEv = useCurved || !curved.converged
+    ? 0
+    : Math.sqrt(Math.max(0, difference ** 2 - Math.max(0, expected)));
+  return {
+    ...edge,
+    stepCounts: fit.values[2],
+    stepStandardError: fit.standardErrors[2],
+    statesUncertaintyEv,
+  };
 }

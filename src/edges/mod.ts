@@ -4,7 +4,7 @@
  *
  * @module
  */
-export { type CutoffOptions, fitCutoff, type FittedEdge } from "./cutoff.ts";
+export { type CutoffOptions, fitCutoff, type FittedCutoff, type FittedEdge } from "./cutoff.ts";
 export { type FermiOptions, fitFermiEdge, type FittedFermiEdge } from "./fermi.ts";
 export { type FittedValenceEdge, fitValenceEdge } from "./valence.ts";
 export { cutoffCandidate, type EdgeCandidate, edgeCandidates } from "./locate.ts";

@@ -16,7 +16,11 @@ const TO_UNIT = 2 ** -32;
 export class Xoshiro128pp {
   readonly #state: Uint32Array;
 
-  /** @param state Four words, not all zero; copied. */
+  /**
+   * Starts from a given state.
+   *
+   * @param state Four words, not all zero; copied.
+   */
   constructor(state: Uint32Array) {
     if (state.length !== 4 || state.every((word) => word === 0)) {
       throw new RangeError(

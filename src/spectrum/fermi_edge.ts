@@ -1,11 +1,13 @@
 import { normalCdf, normalPdf } from "../math/mod.ts";
 
-/** The two moments of a broadened Fermi edge at one energy. */
+/** The moments of a broadened Fermi edge at one energy. */
 export interface FermiEdgeShape {
   /** Fermi-Dirac occupation folded with the Gaussian, 0..1. */
   readonly occupation: number;
   /** `(E - E_F) f(E)` folded with the Gaussian, eV: what a linear density of states adds. */
   readonly slopeEv: number;
+  /** `(E - E_F)^2 f(E)` folded with the Gaussian, eV^2: what a curved density of states adds. */
+  readonly curveEv2: number;
 }
 
 /** Below this share of sigma, kT enters by Sommerfeld's expansion: error of order (kT/sigma)^4, 1e-5. */
@@ -16,7 +18,7 @@ const REACH_SIGMAS = 6.5;
 const REACH_THERMAL = 24;
 
 /**
- * Fermi-Dirac edge, and its first moment, folded with a Gaussian response.
+ * Fermi-Dirac edge, and its first two moments, folded with a Gaussian response.
  *
  * By the trapezoid rule over the Gaussian, which converges exponentially: with a step of `min(sigma, kT)` (and at most
  * sigma/1.2) the error is below 1e-7. For kT < sigma/20 by the Sommerfeld expansion (N. Ashcroft, N. Mermin, Solid State
@@ -36,8 +38,10 @@ export function broadenedFermiEdge(
     return (energyEv, out) => {
       const x = energyEv / sigmaEv;
       const density = normalPdf(x);
-      out.occupation = normalCdf(-x) + (thermal * x * density) / (sigmaEv * sigmaEv);
-      out.slopeEv = energyEv * normalCdf(-x) - sigmaEv * density - (thermal * density) / sigmaEv;
+      const filled = normalCdf(-x);
+      out.occupation = filled + (thermal * x * density) / (sigmaEv * sigmaEv);
+      out.slopeEv = energyEv * filled - sigmaEv * density - (thermal * density) / sigmaEv;
+      out.curveEv2 = (energyEv * energyEv + sigmaEv * sigmaEv) * filled - energyEv * sigmaEv * density;
     };
   }
   const step = Math.min(sigmaEv / 1.2, thermalEnergyEv);
@@ -52,17 +56,21 @@ export function broadenedFermiEdge(
     if (Math.abs(energyEv) > reach) {
       out.occupation = energyEv < 0 ? 1 : 0;
       out.slopeEv = energyEv < 0 ? energyEv : 0;
+      out.curveEv2 = energyEv < 0 ? energyEv * energyEv + sigmaEv * sigmaEv : 0;
       return;
     }
     let occupation = 0;
     let slope = 0;
+    let curve = 0;
     for (let i = 0; i < weights.length; i++) {
       const shifted = energyEv - (i - half) * step;
       const filled = weights[i] / (1 + Math.exp(shifted / thermalEnergyEv));
       occupation += filled;
       slope += filled * shifted;
+      curve += filled * shifted * shifted;
     }
     out.occupation = occupation / norm;
     out.slopeEv = slope / norm;
+    out.curveEv2 = curve / norm;
   };
 }

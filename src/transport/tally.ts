@@ -23,7 +23,11 @@ export class TallyAccumulator {
   readonly #waiting = new Map<number, BatchTally>();
   #next = 0;
 
-  /** @param count Energy bins. */
+  /**
+   * Starts with nothing.
+   *
+   * @param count Energy bins.
+   */
   constructor(count: number) {
     this.#count = count;
   }

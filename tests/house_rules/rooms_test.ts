@@ -92,8 +92,9 @@ Deno.test("every room has a mod.ts that only re-exports and says what the room i
 Deno.test("pure rooms call nothing of Deno, Node, the clock, the console or unseeded randomness", async () => {
   const forbidden =
     /\bDeno\.|"node:|\bprocess\.|\bconsole\.|Math\.random|Date\.now|new Date\(|performance\.now|\bfetch\(/;
+  const code = (text: string): string => text.replaceAll(/^ *\/?\*.*$/gm, ""); // examples in docs may import
   const broken = (await sourceFiles()).filter(({ room, text }) =>
-    PURE.includes(room) && forbidden.test(text)
+    PURE.includes(room) && forbidden.test(code(text))
   );
   assert.deepEqual(broken.map(({ path }) => path), []);
 });
