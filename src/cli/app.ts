@@ -1,10 +1,11 @@
-import { buildApplication, buildCommand, buildRouteMap, numberParser, run, text_en } from "@stricli/core";
+import { buildApplication, buildCommand, buildRouteMap, run, text_en } from "@stricli/core";
 import process from "node:process";
 import { InputError, VERSION } from "../base/mod.ts";
 import { listMaterialValues, material, MATERIAL_IDS } from "../data/mod.ts";
 import { exitCodeOf, FileError, stem, writeFiles } from "./files.ts";
 import { fitFiles, fitJson, type FitStatements, fitSvg, fitText, noticeText } from "./fit.ts";
 import { progressLine, type TerminalStream } from "./progress.ts";
+import { HISTORIES_PER_BATCH } from "../transport/mod.ts";
 import { loadScenario, simulate, type Simulation, spectrumCsv, spectrumSvg } from "./simulate.ts";
 
 /** What a command writes to and reports its exit code through. */
@@ -27,6 +28,14 @@ function count(text: string): number {
     throw new SyntaxError(`must be a whole number >= 1, not ${JSON.stringify(text)}`);
   }
   return value;
+}
+
+/** A number as people write it: an empty text or a hexadecimal one is none. */
+function decimal(text: string): number {
+  if (!/^[+-]?(\d+\.?\d*|\.\d+)(e[+-]?\d+)?$/i.test(text) || !Number.isFinite(Number(text))) {
+    throw new SyntaxError(`must be a decimal number, not ${JSON.stringify(text)}`);
+  }
+  return Number(text);
 }
 
 function columnPair(text: string): readonly [string, string] {
@@ -81,7 +90,8 @@ const simulateCommand = buildCommand({
   docs: {
     brief: "Simulate the spectrum of a scenario: spectrum.csv, result.json, spectrum.svg",
     fullDescription: [
-      "Simulate the spectrum of a scenario and write spectrum.csv, result.json and spectrum.svg.",
+      "Simulate the spectrum of a scenario and write spectrum.csv, result.json and spectrum.svg. Ctrl-C stops early, writes",
+      "what is done so far (result.json then says complete: false) and ends with exit code 1.",
       "",
       "Examples:",
       "  twoedge simulate scenarios/clean_gold_he1.json",
@@ -94,14 +104,14 @@ const simulateCommand = buildCommand({
       out: { ...outFlag, brief: "Folder to write into (default: out/ and the scenario's name)" },
       seed: {
         kind: "parsed",
-        parse: numberParser,
+        parse: decimal,
         brief: "Seed of all random numbers",
         placeholder: "N",
         optional: true,
       },
       histories: {
         kind: "parsed",
-        parse: numberParser,
+        parse: decimal,
         brief: "Photons to follow",
         placeholder: "N",
         optional: true,
@@ -156,7 +166,7 @@ type FitFlags = {
 };
 
 const optionalNumber = (brief: string, placeholder: string) =>
-  ({ kind: "parsed", parse: numberParser, brief, placeholder, optional: true }) as const;
+  ({ kind: "parsed", parse: decimal, brief, placeholder, optional: true }) as const;
 
 const fitCommand = buildCommand({
   docs: {
@@ -311,7 +321,7 @@ const demoCommand = buildCommand({
     written.push(
       ...await writeFiles(folder, [
         ["fit.json", `${JSON.stringify(fitJson(run.result), null, 2)}\n`],
-        ["fit.svg", await fitSvg(run, simulation.result.title)],
+        ["fit.svg", await fitSvg(run, `${simulation.result.title} (simulated)`)],
       ]),
     );
     const { truth } = simulation.result;
@@ -326,11 +336,14 @@ const demoCommand = buildCommand({
       `Wrote ${written.join(", ")}`,
       "",
     ].join("\n"));
-    this.exitCode = run.result.verdict === "failed" ? NOT_TRUSTED : GOOD;
+    if (run.result.verdict === "failed") this.exitCode = NOT_TRUSTED;
   },
 });
 
-/** Loads and runs a scenario with progress and Ctrl-C; null when stopped before there was anything to keep. */
+/**
+ * Loads and runs a scenario with progress. Ctrl-C stops it: the batches done so far are kept, and the exit code says that
+ * they are not what was asked for; null when there are fewer than the two batches that a standard error needs.
+ */
 async function runScenario(
   context: Context,
   path: string,
@@ -339,10 +352,10 @@ async function runScenario(
 ): Promise<Simulation | null> {
   const { stderr } = context.process;
   const loaded = await loadScenario(path, overrides);
-  for (const warning of loaded.resolved.warnings) stderr.write(`Warning: ${noticeText(warning)}\n`);
   const stop = new AbortController();
   const onInterrupt = (): void => stop.abort();
   process.on("SIGINT", onInterrupt);
+  for (const warning of loaded.resolved.warnings) stderr.write(`Warning: ${noticeText(warning)}\n`);
   const progress = progressLine("Simulating", stderr, () => performance.now());
   try {
     const simulation = await simulate(loaded, {
@@ -354,7 +367,7 @@ async function runScenario(
     if (simulation.result.complete) return simulation;
     context.exitCode = NOT_TRUSTED;
     stderr.write(`Stopped after ${simulation.result.histories} histories\n`);
-    return simulation.result.histories > 0 ? simulation : null;
+    return simulation.result.histories > HISTORIES_PER_BATCH ? simulation : null;
   } finally {
     progress.end();
     process.off("SIGINT", onInterrupt);

@@ -11,6 +11,8 @@ export class FileError extends Error {
       ? "it does not exist"
       : code === "EISDIR"
       ? "it is a folder"
+      : code === "EEXIST" || code === "ENOTDIR"
+      ? "a file is where a folder must be"
       : code === "EACCES" || code === "EPERM"
       ? "permission is denied"
       : code === "ENOSPC"

@@ -1,4 +1,4 @@
-import { cannot, InputError, type Notice, VERSION } from "../base/mod.ts";
+import { cannot, type Estimate, InputError, type Notice, VERSION } from "../base/mod.ts";
 import { nearestLine } from "../data/mod.ts";
 import {
   type EdgeRegion,
@@ -9,7 +9,7 @@ import {
 } from "../edges/mod.ts";
 import { readSpectrumFile, type SpectrumRegion } from "../formats/mod.ts";
 import { formatEstimate, renderSvg, spectrumFigure } from "../report/mod.ts";
-import { readBytes } from "./files.ts";
+import { readBytes, stem } from "./files.ts";
 
 /** What the user states on the command line. */
 export type FitStatements = Omit<MeasureOptions, "knownLine"> & {
@@ -168,23 +168,22 @@ export function fitSvg({ regions, result }: FitRun, title: string): Promise<stri
       counts: region.counts.slice().reverse(),
     };
   };
-  const used = regions.filter((region) =>
-    result.inputs.regions.some((use) => use.file === region.file && use.region === region.label)
-  ).map(onFitAxis);
-  const edge = (name: string, fit: FittedEdge | null) => {
-    if (fit === null || !fit.converged) return [];
+  const usesOf = (region: EdgeRegion) =>
+    result.inputs.regions.filter((use) => use.file === region.file && use.region === region.label);
+  const used = regions.filter((region) => usesOf(region).length > 0).map(onFitAxis);
+  const shown = used.length > 0 ? used : regions.map(onFitAxis);
+  const edge = (name: string, purpose: RegExp, fit: FittedEdge | null, position: Estimate | null) => {
+    if (fit === null || position === null || !fit.converged) return [];
     const first = fit.energiesEv[0];
     const owner = used.find((region) =>
-      name === "secondary cutoff"
-        ? result.inputs.regions.find((use) => use.region === region.label)?.use.includes("cutoff")
-        : result.inputs.regions.find((use) => use.region === region.label)?.use.match(/Fermi|valence/)
+      usesOf(region).some(({ use }) => purpose.test(use)) && region.energiesEv.includes(first)
     );
     if (owner === undefined) return [];
     const from = owner.energiesEv.indexOf(first);
     return [{
       name,
-      positionEv: fit.positionEv.value,
-      standardUncertaintyEv: fit.positionEv.standardUncertainty,
+      positionEv: position.value,
+      standardUncertaintyEv: position.standardUncertainty,
       data: { energiesEv: fit.energiesEv, counts: owner.counts.slice(from, from + fit.energiesEv.length) },
       fitted: { energiesEv: fit.energiesEv, counts: fit.fittedCounts },
     }];
@@ -204,11 +203,16 @@ export function fitSvg({ regions, result }: FitRun, title: string): Promise<stri
     axisTitle: inputs.axis.kind === "kinetic"
       ? "Kinetic energy on the axis of the file / eV"
       : "h\u03bd \u2212 binding energy / eV",
-    measured: used.map((region) => ({ label: used.length > 1 ? region.label : "", curve: region })),
+    measured: shown.map((region) => ({
+      label: shown.length > 1 ? region.label || stem(region.file) : "",
+      curve: region,
+    })),
     expected: null,
     edges: [
-      ...edge("secondary cutoff", result.cutoffFit),
-      ...edge(result.fermiEdgeEv ? "Fermi edge" : "valence-band edge", result.upperFit),
+      ...edge("secondary cutoff", /cutoff/, result.cutoffFit, result.cutoffEv),
+      ...(result.fermiEdgeEv
+        ? edge("Fermi edge", /Fermi/, result.upperFit, result.fermiEdgeEv)
+        : edge("valence-band edge", /valence/, result.upperFit, result.upperFit?.positionEv ?? null)),
     ],
   }));
 }

@@ -72,7 +72,7 @@ export function nearestLine(photonEnergyEv: number): {
 } | null {
   for (const name of LAMP_NAMES) {
     const [main, ...others] = lampLines(name);
-    if (Math.abs(main.energyEv - photonEnergyEv) > SAME_LINE_EV) continue;
+    if (!(Math.abs(main.energyEv - photonEnergyEv) <= SAME_LINE_EV)) continue;
     return {
       name: main.name,
       energyEv: main.energyEv,

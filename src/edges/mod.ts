@@ -9,7 +9,7 @@ export { type FermiOptions, fitFermiEdge, type FittedFermiEdge } from "./fermi.t
 export { type FittedValenceEdge, fitValenceEdge } from "./valence.ts";
 export { cutoffCandidate, type EdgeCandidate, edgeCandidates } from "./locate.ts";
 export { type Satellite } from "./satellites.ts";
-export { type EnergyReference, energyReferences } from "./energy_reference.ts";
+export { type AxisKnowledge, type EnergyReference, energyReferences } from "./energy_reference.ts";
 export {
   type BudgetTerm,
   type EdgeRegion,

@@ -66,7 +66,10 @@ function fitLine(
   const stepEv = (window[window.length - 1] - window[0]) / (window.length - 1);
   const copied = ghosts(fitting, energiesEv, counts, window);
   const slope = Math.max(1, -localSlope(energiesEv, counts, candidate.channel, SLOPE_HALF_EV));
-  const onset = candidate.energyEv + counts[candidate.channel] / slope;
+  const onset = Math.min(
+    candidate.energyEv + counts[candidate.channel] / slope,
+    window[window.length - 1],
+  );
   const floor = meanCounts(window, data, window[window.length - 1] - 0.2, Infinity);
   const parameters: FitParameter[] = [
     { name: "position", start: onset, lower: window[0], upper: window[window.length - 1], scale: 0.05 },

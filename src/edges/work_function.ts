@@ -291,6 +291,15 @@ export function measureWorkFunction(
     }
   }
   if (fermi === null && upper !== null && !failed) {
+    const last = upperRegion?.energiesEv.at(-1) ?? -Infinity;
+    if (reference !== null && last < reference.fermiLevelEv) {
+      reasons.push(
+        `the data end ${
+          (reference.fermiLevelEv - last).toFixed(2)
+        } eV below the Fermi level, so a Fermi edge could ` +
+          "not be seen and what is taken for a valence-band maximum may be none; measure further up",
+      );
+    }
     if (references.length > 1) {
       fail("no Fermi edge was found and the axis can be read in several ways; give --fermi-level or --bias");
     } else if (reference === null || !reference.usable) {

@@ -15,5 +15,11 @@ export type {
 } from "./types.ts";
 export { parseScenario, scenarioJsonSchema } from "./parse.ts";
 export { applyOverrides } from "./overrides.ts";
-export { type ResolvedScenario, resolveScenario, type UserTable, type UserTables } from "./resolve.ts";
+export {
+  type ResolvedLine,
+  type ResolvedScenario,
+  resolveScenario,
+  type UserTable,
+  type UserTables,
+} from "./resolve.ts";
 export { scenarioHash } from "./hash.ts";
