@@ -146,7 +146,7 @@ function duplicateKeys(node: Node, pointer = ""): Problem[] {
       continue;
     }
     const [key, value] = child.children;
-    const place = `${pointer}/${key.value}`;
+    const place = pointer + pointerStep(key.value);
     if (seen.has(key.value)) {
       problems.push({
         place,
@@ -192,10 +192,13 @@ const UNITS: readonly (readonly [RegExp, string])[] = [
   [/V$/, "V"],
 ];
 
+/** One step of a JSON pointer (RFC 6901, section 3). */
+function pointerStep(key: PropertyKey): string {
+  return `/${String(key).replaceAll("~", "~0").replaceAll("/", "~1")}`;
+}
+
 function toProblems(issue: z.core.$ZodIssue): Problem[] {
-  const pointer = issue.path.map((key) => `/${String(key).replaceAll("~", "~0").replaceAll("/", "~1")}`).join(
-    "",
-  );
+  const pointer = issue.path.map(pointerStep).join("");
   const key = String(issue.path.at(-1) ?? "scenario");
   const unit = UNITS.find(([pattern]) => pattern.test(key))?.[1];
   const withUnit = (value: unknown): string => (unit ? `${value} ${unit}` : String(value));
@@ -211,7 +214,7 @@ function toProblems(issue: z.core.$ZodIssue): Problem[] {
         const near = suggest(unknown, known);
         const hint = near ? ` (did you mean ${near}?)` : ` (known here: ${known.join(", ")})`;
         return {
-          place: `${pointer}/${unknown}`,
+          place: pointer + pointerStep(unknown),
           message: cannot("read scenario", `every key must be known${hint}`, unknown),
         };
       });
@@ -243,7 +246,7 @@ function toProblems(issue: z.core.$ZodIssue): Problem[] {
     case "invalid_union":
       return say(
         `${key} must be ${key === "kind" ? `one of ${kindsAt(issue.path).join(", ")}` : "known"}`,
-        input,
+        key === "kind" ? (input as { kind?: unknown }).kind ?? "nothing" : input,
       );
     default:
       return say(`${key} must be valid (${issue.message})`, input);

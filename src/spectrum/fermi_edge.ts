@@ -40,7 +40,7 @@ export function broadenedFermiEdge(
       const density = normalPdf(x);
       const filled = normalCdf(-x);
       out.occupation = filled + (thermal * x * density) / (sigmaEv * sigmaEv);
-      out.slopeEv = energyEv * filled - sigmaEv * density - (thermal * density) / sigmaEv;
+      out.slopeEv = energyEv * filled - sigmaEv * density + (thermal * density) / sigmaEv;
       out.curveEv2 = (energyEv * energyEv + sigmaEv * sigmaEv) * filled - energyEv * sigmaEv * density;
     };
   }

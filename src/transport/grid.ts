@@ -8,7 +8,7 @@ export interface EnergyGrid {
   readonly stepEv: number;
   /** Number of bins from the Fermi level up. */
   readonly count: number;
-  /** First bin that reaches above the vacuum level; electrons below it never come out and are dropped. */
+  /** First bin above the vacuum level; electrons below it never come out and are dropped. */
   readonly vacuumBin: number;
   /** Bins below the Fermi level (or above, for holes) that thermal smearing reaches. */
   readonly thermalBins: number;
@@ -20,23 +20,28 @@ const THERMAL_REACH = 16;
 /**
  * Grid that holds every electron a photon of the given energy can make.
  *
- * @param stepEv Width of a bin, eV, > 0.
+ * The vacuum level is made a bin edge, so that no bin mixes electrons that can leave with electrons that cannot: at
+ * T = 0 nothing comes out below threshold, by however little.
+ *
+ * @param widestStepEv Widest bin allowed, eV, > 0.
  * @param limits Highest photon energy and work function, eV, and thermal energy kT, eV, >= 0.
  * @returns The grid; without room for an electron above the vacuum level `vacuumBin >= count`.
  */
 export function energyGrid(
-  stepEv: number,
+  widestStepEv: number,
   limits: {
     readonly photonEnergyEv: number;
     readonly workFunctionEv: number;
     readonly thermalEnergyEv: number;
   },
 ): EnergyGrid {
+  const vacuumBin = Math.ceil(limits.workFunctionEv / widestStepEv - 1e-9);
+  const stepEv = vacuumBin > 0 ? limits.workFunctionEv / vacuumBin : widestStepEv;
   const thermalBins = Math.ceil((THERMAL_REACH * limits.thermalEnergyEv) / stepEv);
   return {
     stepEv,
     count: Math.ceil(limits.photonEnergyEv / stepEv) + thermalBins + 1,
-    vacuumBin: Math.floor(limits.workFunctionEv / stepEv + 1e-9),
+    vacuumBin,
     thermalBins,
   };
 }

@@ -89,7 +89,7 @@ for (
     ["sample.material=Al", "acquisition.startEv=8"],
     ["sample.material=W"], // steep, curved states at the Fermi edge
     ['light.lamp="Ne I"', "acquisition.endEv=24"], // a second line 0.18 eV below
-    ["sample.transportMeanFreePathNm=5", "light.photonFluxPerS=5e8"],
+    ["sample.transportMeanFreePathNm=5", "light.photonFluxPerS=2e9"],
     ["sample.workFunctionEv=4.7"],
     ["analyzer.workFunctionEv=4.1"],
   ]

@@ -1,0 +1,136 @@
+import { buildCommand } from "@stricli/core";
+import process from "node:process";
+import { HISTORIES_PER_BATCH } from "../transport/mod.ts";
+import { stem, writeFiles } from "./files.ts";
+import { noticeText } from "./fit.ts";
+import {
+  type Context,
+  decimal,
+  jsonFlag,
+  NOT_TRUSTED,
+  outFlag,
+  scenarioArgument,
+  setFlag,
+  workersFlag,
+} from "./flags.ts";
+import { progressLine } from "./progress.ts";
+import { loadScenario, simulate, type Simulation, spectrumCsv, spectrumSvg } from "./simulate.ts";
+
+type SimulateFlags = {
+  out?: string;
+  seed?: number;
+  histories?: number;
+  workers?: number;
+  set?: readonly string[];
+  json: boolean;
+};
+
+/** `simulate` */
+export const simulateCommand = buildCommand({
+  docs: {
+    brief: "Simulate the spectrum of a scenario: spectrum.csv, result.json, spectrum.svg",
+    fullDescription: [
+      "Simulate the spectrum of a scenario and write spectrum.csv, result.json and spectrum.svg. Ctrl-C stops early, writes",
+      "what is done so far (result.json then says complete: false) and ends with exit code 1.",
+      "",
+      "Examples:",
+      "  twoedge simulate scenarios/clean_gold_he1.json",
+      "  twoedge simulate scenarios/clean_gold_he1.json --set sample.temperatureK=77 --out out/cold",
+    ].join("\n"),
+  },
+  parameters: {
+    positional: { kind: "tuple", parameters: [scenarioArgument] },
+    flags: {
+      out: { ...outFlag, brief: "Folder to write into (default: out/ and the scenario's name)" },
+      seed: {
+        kind: "parsed",
+        parse: decimal,
+        brief: "Seed of all random numbers",
+        placeholder: "N",
+        optional: true,
+      },
+      histories: {
+        kind: "parsed",
+        parse: decimal,
+        brief: "Photons to follow",
+        placeholder: "N",
+        optional: true,
+      },
+      workers: workersFlag,
+      set: setFlag,
+      json: jsonFlag,
+    },
+  },
+  async func(this: Context, flags: SimulateFlags, path: string) {
+    const overrides = [
+      ...(flags.set ?? []),
+      ...(flags.seed === undefined ? [] : [`simulation.seed=${flags.seed}`]),
+      ...(flags.histories === undefined ? [] : [`simulation.histories=${flags.histories}`]),
+    ];
+    const simulation = await runScenario(this, path, overrides, flags.workers);
+    if (simulation === null) return;
+    const folder = flags.out ?? `out/${stem(path)}`;
+    const written = await writeSimulation(simulation, folder);
+    if (flags.json) {
+      this.process.stdout.write(`${JSON.stringify(simulation.result, null, 2)}\n`);
+      return;
+    }
+    const { result } = simulation;
+    this.process.stdout.write([
+      `${result.title}: ${result.histories} histories, scenario ${result.scenarioHash}`,
+      `  work function put in       ${result.truth.workFunctionEv.toFixed(3)} eV`,
+      `  cutoff / Fermi edge        ${result.truth.cutoffEv.toFixed(3)} / ${
+        result.truth.fermiEdgeEv.toFixed(3)
+      } eV as recorded`,
+      `  highest expected counts    ${result.peakCounts.toPrecision(4)} in a channel`,
+      `  Monte Carlo standard error at most ${
+        (100 * result.worstRelativeStandardError).toPrecision(2)
+      } % above a tenth of that`,
+      `Wrote ${written.join(", ")}`,
+      "",
+    ].join("\n"));
+  },
+});
+
+/**
+ * Loads and runs a scenario with progress. Ctrl-C stops it: the batches done so far are kept, and the exit code says that
+ * they are not what was asked for; null when there are fewer than the two batches that a standard error needs.
+ */
+export async function runScenario(
+  context: Context,
+  path: string,
+  overrides: readonly string[],
+  workers: number | undefined,
+): Promise<Simulation | null> {
+  const { stderr } = context.process;
+  const loaded = await loadScenario(path, overrides);
+  const stop = new AbortController();
+  const onInterrupt = (): void => stop.abort();
+  process.on("SIGINT", onInterrupt);
+  for (const warning of loaded.resolved.warnings) stderr.write(`Warning: ${noticeText(warning)}\n`);
+  const progress = progressLine("Simulating", stderr, () => performance.now());
+  try {
+    const simulation = await simulate(loaded, {
+      workers: workers ?? Math.max(1, navigator.hardwareConcurrency),
+      signal: stop.signal,
+      onProgress: progress.update,
+    });
+    progress.end();
+    if (simulation.result.complete) return simulation;
+    context.exitCode = NOT_TRUSTED;
+    stderr.write(`Stopped after ${simulation.result.histories} histories\n`);
+    return simulation.result.histories > HISTORIES_PER_BATCH ? simulation : null;
+  } finally {
+    progress.end();
+    process.off("SIGINT", onInterrupt);
+  }
+}
+
+/** Writes what a simulation gives. */
+export async function writeSimulation(simulation: Simulation, folder: string): Promise<string[]> {
+  return await writeFiles(folder, [
+    ["spectrum.csv", spectrumCsv(simulation)],
+    ["result.json", `${JSON.stringify(simulation.result, null, 2)}\n`],
+    ["spectrum.svg", await spectrumSvg(simulation)],
+  ]);
+}
