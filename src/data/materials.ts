@@ -18,6 +18,58 @@ export interface CitedLobe {
   readonly electrons: Cited;
 }
 
+/** A core level, one spin-orbit component, with sources. */
+export interface CitedCoreLevel {
+  /** Element and subshell, such as `Au 4f7/2`. */
+  readonly name: string;
+  /** Binding energy below the Fermi level, eV. */
+  readonly bindingEnergyEv: Cited;
+  /** Natural full width at half maximum (Lorentzian), eV. */
+  readonly lorentzFwhmEv: Cited;
+  /** Asymmetry of Doniach and Sunjic, 0 for a symmetric line. */
+  readonly asymmetry: Cited;
+  /** Photoionization cross-section of the component relative to C 1s, per formula unit, at Al K-alpha. */
+  readonly relativeCrossSection: Cited;
+  /** Angular asymmetry parameter beta, -1..2. */
+  readonly beta: Cited;
+}
+
+/** Energy-loss cross-section of Tougaard: two parameters, or three when `dEv2` is given. */
+export interface CitedTougaardLoss {
+  /** Kind. */
+  readonly kind: "tougaard";
+  /** B, eV^2. */
+  readonly bEv2: Cited;
+  /** C, eV^2. */
+  readonly cEv2: Cited;
+  /** D, eV^2; null for the two-parameter form. */
+  readonly dEv2: Cited | null;
+  /** No losses below this energy, eV. */
+  readonly onsetEv: Cited;
+}
+
+/** Energy losses as a sum of Drude-Lindhard oscillators. */
+export interface CitedOscillatorLoss {
+  /** Kind. */
+  readonly kind: "oscillators";
+  /** Oscillators of the energy-loss function. */
+  readonly terms: readonly { readonly energyEv: Cited; readonly fwhmEv: Cited; readonly strength: Cited }[];
+  /** No losses below this energy, eV. */
+  readonly onsetEv: Cited;
+}
+
+/** What a formula for the mean free path of fast electrons needs, per formula unit. */
+export interface CitedBulk {
+  /** Density, g/cm^3. */
+  readonly densityGPerCm3: Cited;
+  /** Molar mass, g/mol. */
+  readonly molarMassGPerMol: Cited;
+  /** Valence electrons. */
+  readonly valenceElectrons: Cited;
+  /** Band gap, eV; 0 for a metal. */
+  readonly gapEv: Cited;
+}
+
 /** A material with the source of every number. */
 export interface Material {
   /** Short name, such as `Au`. */
@@ -28,6 +80,8 @@ export interface Material {
   readonly note: string;
   /** Work functions by face, eV; `polycrystalline` is always there. */
   readonly workFunctions: Readonly<Record<string, Cited>>;
+  /** Valence-band maximum below the Fermi level in the undoped or usual state, eV; null for a metal. */
+  readonly valenceMaximumBelowFermiEv: Cited | null;
   /** Depth of the band bottom below the Fermi level, eV. */
   readonly bandBottomBelowFermiEv: Cited;
   /** Electrons per atom in the free-electron-like band. */
@@ -43,6 +97,12 @@ export interface Material {
     readonly columns: readonly string[];
     readonly rows: readonly (readonly [number, number, number])[];
   };
+  /** Bulk numbers for fast electrons. */
+  readonly bulk: CitedBulk;
+  /** Energy losses of fast electrons. */
+  readonly loss: CitedTougaardLoss | CitedOscillatorLoss;
+  /** Core levels within reach of Al K-alpha that users look at. */
+  readonly coreLevels: readonly CitedCoreLevel[];
 }
 
 const schema = z.strictObject({
@@ -55,8 +115,9 @@ const schema = z.strictObject({
       message: "polycrystalline must be given",
     },
   ),
+  valenceMaximumBelowFermiEv: cited("eV", 0, 15).nullable(),
   bandBottomBelowFermiEv: cited("eV", 0.1, 50),
-  spElectrons: cited("1", 0.01, 20),
+  spElectrons: cited("1", 0.01, 30),
   dLobes: z.array(z.strictObject({
     centerBindingEv: cited("eV", -30, 50),
     fwhmEv: cited("eV", 0.05, 20),
@@ -75,6 +136,38 @@ const schema = z.strictObject({
       { message: "wavelengths must ascend" },
     ),
   }),
+  bulk: z.strictObject({
+    densityGPerCm3: cited("g/cm^3", 0.1, 30),
+    molarMassGPerMol: cited("g/mol", 1, 1000),
+    valenceElectrons: cited("1", 1, 100),
+    gapEv: cited("eV", 0, 15),
+  }),
+  loss: z.discriminatedUnion("kind", [
+    z.strictObject({
+      kind: z.literal("tougaard"),
+      bEv2: cited("eV^2", 0.1, 1e5),
+      cEv2: cited("eV^2", 0.1, 1e5),
+      dEv2: cited("eV^2", 0.1, 1e5).nullable(),
+      onsetEv: cited("eV", 0, 30),
+    }),
+    z.strictObject({
+      kind: z.literal("oscillators"),
+      terms: z.array(z.strictObject({
+        energyEv: cited("eV", 0.1, 200),
+        fwhmEv: cited("eV", 0.05, 200),
+        strength: cited("1", 1e-6, 10),
+      })).min(1),
+      onsetEv: cited("eV", 0, 30),
+    }),
+  ]),
+  coreLevels: z.array(z.strictObject({
+    name: z.string().regex(/^[A-Z][a-z]? [1-6][spdf](?:[1357]\/2)?$/),
+    bindingEnergyEv: cited("eV", 1, 1480),
+    lorentzFwhmEv: cited("eV", 0.01, 10),
+    asymmetry: cited("1", 0, 0.4),
+    relativeCrossSection: cited("1", 1e-3, 100),
+    beta: cited("1", -1, 2),
+  })),
 });
 
 /**
@@ -183,6 +276,9 @@ export function listMaterialValues(chosen: Material): readonly MaterialValue[] {
   const { opticalConstants: optics, lowEnergyMeanFreePath: path } = chosen;
   return [
     ...Object.entries(chosen.workFunctions).map(([face, number]) => row(`work function, ${face}`, number)),
+    ...(chosen.valenceMaximumBelowFermiEv === null
+      ? []
+      : [row("valence-band maximum below the Fermi level", chosen.valenceMaximumBelowFermiEv)]),
     row("band bottom below the Fermi level", chosen.bandBottomBelowFermiEv),
     row("electrons in the sp band", chosen.spElectrons),
     ...chosen.dLobes.flatMap((lobe, i) => [
@@ -201,5 +297,28 @@ export function listMaterialValues(chosen: Material): readonly MaterialValue[] {
       source: optics.source,
       confidence: optics.confidence,
     })),
+    row("density", chosen.bulk.densityGPerCm3),
+    row("molar mass", chosen.bulk.molarMassGPerMol),
+    row("valence electrons per formula unit", chosen.bulk.valenceElectrons),
+    row("band gap", chosen.bulk.gapEv),
+    row("no energy loss below", chosen.loss.onsetEv),
+    ...(chosen.loss.kind === "tougaard"
+      ? [
+        row("energy loss, B", chosen.loss.bEv2),
+        row("energy loss, C", chosen.loss.cEv2),
+        ...(chosen.loss.dEv2 === null ? [] : [row("energy loss, D", chosen.loss.dEv2)]),
+      ]
+      : chosen.loss.terms.flatMap((term, i) => [
+        row(`loss oscillator ${i + 1}, energy`, term.energyEv),
+        row(`loss oscillator ${i + 1}, full width at half maximum`, term.fwhmEv),
+        row(`loss oscillator ${i + 1}, strength`, term.strength),
+      ])),
+    ...chosen.coreLevels.flatMap((level) => [
+      row(`${level.name}, binding energy`, level.bindingEnergyEv),
+      row(`${level.name}, Lorentzian full width at half maximum`, level.lorentzFwhmEv),
+      row(`${level.name}, asymmetry`, level.asymmetry),
+      row(`${level.name}, cross-section relative to C 1s`, level.relativeCrossSection),
+      row(`${level.name}, beta`, level.beta),
+    ]),
   ];
 }

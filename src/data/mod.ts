@@ -7,7 +7,11 @@ export { BOLTZMANN_EV_PER_K, HC_EV_NM } from "./constants.ts";
 export type { Cited, Confidence } from "./cited.ts";
 export { LAMP_NAMES, type LampLine, lampLines, nearestLine } from "./lamps.ts";
 export {
+  type CitedBulk,
+  type CitedCoreLevel,
   type CitedLobe,
+  type CitedOscillatorLoss,
+  type CitedTougaardLoss,
   listMaterialValues,
   type Material,
   material,
