@@ -4,6 +4,7 @@
  * @module
  */
 export { BOLTZMANN_EV_PER_K, HC_EV_NM } from "./constants.ts";
+export { type Anode, anode, ANODE_NAMES, type AnodeLine } from "./anodes.ts";
 export type { Cited, Confidence } from "./cited.ts";
 export { LAMP_NAMES, type LampLine, lampLines, nearestLine } from "./lamps.ts";
 export {

@@ -6,3 +6,11 @@
 export { erfc, erfcx, fastErfcx, normalCdf, normalPdf } from "./erfc.ts";
 export { interpolateLinear } from "./interpolate.ts";
 export { gaussLegendre, type QuadratureRule } from "./quadrature.ts";
+export {
+  type Complex,
+  complexAdd,
+  complexDivide,
+  complexLog,
+  complexMultiply,
+  complexSqrt,
+} from "./complex.ts";

@@ -6,3 +6,10 @@
  */
 export { type BandLobe, type BandModel, densityOfStates } from "./density_of_states.ts";
 export { type Absorption, absorption, type OpticalIndex } from "./absorption.ts";
+export {
+  type LayeredAbsorption,
+  layeredAbsorption,
+  type LayeredLight,
+  type OpticalLayer,
+  type Polarization,
+} from "./layered_absorption.ts";
