@@ -27,10 +27,10 @@ const BAND_REACH_SIGMAS = 4;
 export interface EngineData {
   /** First event; null when no photon can lift an electron above the Fermi level. */
   readonly source: PhotonSource | null;
-  /** Scattering. */
-  readonly tables: PairTables;
-  /** Barrier and acceptance. */
-  readonly detection: DetectionTable;
+  /** Scattering, layer by layer. */
+  readonly stack: LayerStack;
+  /** Barriers and acceptances of the parts of the surface. */
+  readonly surface: readonly SurfacePart[];
   /** Expected electrons per absorbed photon that reach the analyzer without an event, shape (bins). */
   readonly direct: Float64Array;
 }

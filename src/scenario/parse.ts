@@ -7,15 +7,44 @@ import type { Scenario } from "./types.ts";
 
 const energy = (low: number, high: number) => z.number().min(low).max(high);
 
+const transportMeanFreePathNm = z.number().positive().max(1e6).nullable().default(null);
+
+const surface = z.strictObject({
+  patches: z.array(z.strictObject({
+    areaFraction: z.number().positive().max(1),
+    workFunctionEv: energy(0.5, 10),
+  })).max(8).default([]),
+  patchField: z.enum(["strong", "weak"]).default("strong"),
+  workFunctionSpreadEv: energy(0, 0.5).default(0),
+  facetTiltDeg: z.number().min(0).max(40).default(0),
+  extractionFieldVPerM: z.number().min(0).max(1e9).default(0),
+  dipoleDensityPerNm2: z.number().min(0).max(20).default(0),
+  dipoleMomentDebye: z.number().min(-20).max(20).default(0),
+});
+
+const charging = z.strictObject({ shiftEv: energy(-20, 100).default(0), fwhmEv: energy(0, 20).default(0) });
+
 const sample = z.strictObject({
   material: z.enum(MATERIAL_IDS),
   face: z.string().min(1).default("polycrystalline"),
   temperatureK: z.number().min(0).max(3000).default(300),
   workFunctionEv: energy(0.5, 10).nullable().default(null),
   barrier: z.enum(["classical", "quantum"]).default("classical"),
-  transportMeanFreePathNm: z.number().positive().max(1e6).nullable().default(null),
+  transportMeanFreePathNm,
   densityOfStatesFile: z.string().min(1).nullable().default(null),
   meanFreePathFile: z.string().min(1).nullable().default(null),
+  layers: z.array(z.strictObject({
+    material: z.enum(MATERIAL_IDS),
+    thicknessNm: z.number().min(0.01).max(10_000),
+    transportMeanFreePathNm,
+  })).max(8).default([]),
+  surface: surface.default(() => surface.parse({})),
+  valenceMaximumBelowFermiEv: energy(0, 15).nullable().default(null),
+  bandBending: z.strictObject({
+    surfaceShiftEv: energy(-5, 5),
+    widthNm: z.number().min(0.1).max(10_000),
+  }).nullable().default(null),
+  charging: charging.default(() => charging.parse({})),
 });
 
 const photonFluxPerS = z.number().positive().max(1e20).default(1e10);
@@ -177,12 +206,29 @@ function crossChecks(data: Scenario): Problem[] {
       ),
     });
   }
+  const { patches, facetTiltDeg } = data.sample.surface;
+  const area = patches.reduce((sum, patch) => sum + patch.areaFraction, 0);
+  if (patches.length > 0 && Math.abs(area - 1) > 1e-6) {
+    problems.push({
+      place: "/sample/surface/patches",
+      message: cannot("use scenario", "the areaFraction of all patches must add up to 1", area),
+    });
+  }
+  if (facetTiltDeg > 0 && data.geometry.emissionAngleDeg !== 0) {
+    problems.push({
+      place: "/sample/surface/facetTiltDeg",
+      message: cannot("use scenario", "facetTiltDeg must be 0 off normal emission", `${facetTiltDeg} degrees`),
+    });
+  }
   return problems;
 }
 
 const UNITS: readonly (readonly [RegExp, string])[] = [
   [/CountsPerS$/, "counts/s"],
   [/PerS$/, "1/s"],
+  [/PerNm2$/, "1/nm^2"],
+  [/VPerM$/, "V/m"],
+  [/Debye$/, "D"],
   [/Ev$/, "eV"],
   [/K$/, "K"],
   [/Nm$/, "nm"],

@@ -1,4 +1,60 @@
-/** The sample: a clean, flat, homogeneous metal. */
+/** A film on the sample. */
+export interface LayerSettings {
+  /** Material by its name. */
+  readonly material: string;
+  /** Thickness, nm, 0.01..10000. */
+  readonly thicknessNm: number;
+  /** Transport mean free path of elastic events in it, nm, > 0; null for none. Default: null. */
+  readonly transportMeanFreePathNm: number | null;
+}
+
+/** A part of the surface with its own work function. */
+export interface PatchSettings {
+  /** Share of the area, > 0..1; all shares together must be 1. */
+  readonly areaFraction: number;
+  /** Work function, eV, 0.5..10. */
+  readonly workFunctionEv: number;
+}
+
+/** What makes a real surface differ from a flat uniform one. */
+export interface SurfaceSettings {
+  /** Parts with different work functions; empty for a uniform surface. Default: none. */
+  readonly patches: readonly PatchSettings[];
+  /**
+   * `strong`: the extraction field reaches between the patches, each shows its own cutoff. `weak`: electrons from patches
+   * of low work function still have to pass the area mean (C. Herring, M. Nichols, Rev. Mod. Phys. 21, 185 (1949)).
+   * Default: `strong`.
+   */
+  readonly patchField: "strong" | "weak";
+  /** Standard deviation of a Gaussian spread of the work function, eV, 0..0.5. Default: 0 eV. */
+  readonly workFunctionSpreadEv: number;
+  /** Root mean square tilt of the facets of a rough surface, degrees, 0..40, only at normal emission. Default: 0. */
+  readonly facetTiltDeg: number;
+  /** Field at the surface that pulls electrons out, V/m, 0..1e9; lowers the work function (image force). Default: 0 V/m. */
+  readonly extractionFieldVPerM: number;
+  /** Adsorbate dipoles, 1/nm^2, 0..20. Default: 0. */
+  readonly dipoleDensityPerNm2: number;
+  /** Moment of each, debye, -20..20; positive with the negative end outward, which raises W. Default: 0 D. */
+  readonly dipoleMomentDebye: number;
+}
+
+/** A shift of all bands toward the surface of a semiconductor. */
+export interface BandBendingSettings {
+  /** Binding energies at the surface less those in the bulk, eV, -5..5: positive where the bands bend down. */
+  readonly surfaceShiftEv: number;
+  /** Width of the parabolic profile, nm, 0.1..10000. */
+  readonly widthNm: number;
+}
+
+/** Charge that builds up on a poorly conducting sample. */
+export interface ChargingSettings {
+  /** Loss of kinetic energy, eV, -20..100: positive for a positively charged sample. Default: 0 eV. */
+  readonly shiftEv: number;
+  /** Full width at half maximum of its Gaussian spread, eV, 0..20. Default: 0 eV. */
+  readonly fwhmEv: number;
+}
+
+/** The sample: a substrate, films on it, and its surface. */
 export interface SampleSettings {
   /** Material by its built-in name, such as `Au`. */
   readonly material: string;
@@ -6,7 +62,10 @@ export interface SampleSettings {
   readonly face: string;
   /** Temperature, K, 0..3000. Default: 300 K. */
   readonly temperatureK: number;
-  /** Work function, eV, 0.5..10, instead of the tabulated one; null takes the table. Default: null. */
+  /**
+   * Work function, eV, 0.5..10, instead of the tabulated one of the uppermost material; null takes the table. Default:
+   * null.
+   */
   readonly workFunctionEv: number | null;
   /** Transmission of the surface barrier. Default: `classical` (1 above the barrier). */
   readonly barrier: "classical" | "quantum";
@@ -16,6 +75,19 @@ export interface SampleSettings {
   readonly densityOfStatesFile: string | null;
   /** CSV file with columns `energy_ev,length_nm` (energy above the Fermi level), beside the scenario. Default: null. */
   readonly meanFreePathFile: string | null;
+  /** Films from the surface down; the uppermost sets the barrier. Default: none. */
+  readonly layers: readonly LayerSettings[];
+  /** Patches, roughness, fields, dipoles. */
+  readonly surface: SurfaceSettings;
+  /**
+   * Valence-band maximum of the substrate below the Fermi level, eV, 0..15, as doping sets it; null takes the table.
+   * Only for materials with a gap. Default: null.
+   */
+  readonly valenceMaximumBelowFermiEv: number | null;
+  /** Band bending of the substrate; null for flat bands. Default: null. */
+  readonly bandBending: BandBendingSettings | null;
+  /** Charging. */
+  readonly charging: ChargingSettings;
 }
 
 /** The light that reaches the analyzed spot. */

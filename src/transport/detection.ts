@@ -17,6 +17,8 @@ export interface DetectionInput {
   readonly acceptanceHalfAngleRad: number;
   /** Angle between the surface normal and the analyzer axis, rad, 0..pi/2. */
   readonly emissionAngleRad: number;
+  /** Tilt of the emitting facet from the mean surface, rad, 0..pi/2, only at emission angle 0. Default: 0. */
+  readonly facetTiltRad?: number;
   /** Cells per mean free path of the depth table, and how many mean free paths deep it goes. */
   readonly cellsPerPath: number;
   /** Depth in mean free paths beyond which nothing is scored. */
@@ -57,7 +59,8 @@ export function barrierTransmission(input: DetectionInput, energyEv: number, cos
 
 /**
  * Share of azimuths at which an electron that leaves is accepted by the analyzer. Parallel momentum is kept through
- * the barrier and the bias field, so `sin^2 theta_an = E_in sin^2 theta_in / (E_out + A)`.
+ * the barrier and the bias field, so `sin^2 theta_an = E_in sin^2 theta_in / (E_out + A)`. A tilted facet keeps its own
+ * parallel momentum at its barrier; the field acts along the mean normal.
  *
  * @param input The acceptance.
  * @param energyEv Energy above the Fermi level, eV.
@@ -65,11 +68,15 @@ export function barrierTransmission(input: DetectionInput, energyEv: number, cos
  * @returns Share, 0..1; at normal emission 0 or 1.
  */
 export function acceptedShare(input: DetectionInput, energyEv: number, cosInside: number): number {
-  const { emissionAngleRad: axis, acceptanceHalfAngleRad: half } = input;
-  const arriving = energyEv - input.workFunctionEv + input.accelerationEv;
+  const outside = energyEv - input.workFunctionEv;
+  const arriving = outside + input.accelerationEv;
+  const tilt = input.facetTiltRad ?? 0;
+  const axis = tilt > 0 ? tilt : input.emissionAngleRad;
+  const half = tilt > 0 ? coneBeforeField(input, outside, arriving) : input.acceptanceHalfAngleRad;
+  const frame = tilt > 0 ? outside : arriving;
   const parallel = (energyEv + input.bandBottomBelowFermiEv) * (1 - cosInside * cosInside);
-  if (!(arriving > 0) || parallel > arriving) return 0;
-  const sine = Math.sqrt(parallel / arriving);
+  if (!(arriving > 0) || parallel > frame) return 0;
+  const sine = Math.sqrt(parallel / frame);
   const angle = Math.asin(sine);
   if (angle + axis <= half) return 1;
   if (Math.abs(angle - axis) > half) return 0;
@@ -79,16 +86,28 @@ export function acceptedShare(input: DetectionInput, energyEv: number, cosInside
   return cosAzimuth >= 1 ? 0 : cosAzimuth <= -1 ? 1 : Math.acos(cosAzimuth) / Math.PI;
 }
 
+/**
+ * Half-angle, just outside the surface, of the cone about the mean normal that the bias field narrows into the
+ * acceptance: `E_out sin^2 = (E_out + A) sin^2(acceptance)`; all of the half-space where that exceeds E_out.
+ */
+function coneBeforeField(input: DetectionInput, outsideEv: number, arrivingEv: number): number {
+  const sine = Math.sqrt(arrivingEv / outsideEv) * Math.sin(input.acceptanceHalfAngleRad);
+  return sine < 1 ? Math.asin(sine) : Math.PI / 2;
+}
+
 /** Ends of `sqrt(E_out cos^2 theta_out)` between which the acceptance is not zero. */
 function normalMomentumRange(input: DetectionInput, energyEv: number): [number, number] {
-  const { emissionAngleRad: axis, acceptanceHalfAngleRad: half } = input;
   const outside = energyEv - input.workFunctionEv;
   const arriving = outside + input.accelerationEv;
   if (!(outside > 0) || !(arriving > 0)) return [0, 0];
+  const tilt = input.facetTiltRad ?? 0;
+  const axis = tilt > 0 ? tilt : input.emissionAngleRad;
+  const half = tilt > 0 ? coneBeforeField(input, outside, arriving) : input.acceptanceHalfAngleRad;
+  const frame = tilt > 0 ? outside : arriving;
   const steepest = Math.min(Math.PI / 2, axis + half);
   const flattest = Math.max(0, axis - half);
-  const lowest = Math.max(0, outside - arriving * Math.sin(steepest) ** 2);
-  const highest = outside - arriving * Math.sin(flattest) ** 2;
+  const lowest = Math.max(0, outside - frame * Math.sin(steepest) ** 2);
+  const highest = outside - frame * Math.sin(flattest) ** 2;
   return highest > lowest ? [Math.sqrt(lowest), Math.sqrt(highest)] : [0, 0];
 }
 

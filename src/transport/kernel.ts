@@ -1,6 +1,6 @@
 import { sampleAlias, streamState, writeAliasRow, Xoshiro128pp } from "../rng/mod.ts";
 import { acceptedShare, barrierTransmission, type DetectionTable } from "./detection.ts";
-import type { PairTables } from "./pair_tables.ts";
+import type { LayerStack } from "./stack.ts";
 
 /** Histories in one batch; a batch is the unit of work, of random streams and of statistics. */
 export const HISTORIES_PER_BATCH = 4096;
@@ -8,26 +8,46 @@ export const HISTORIES_PER_BATCH = 4096;
 /** Depth cells per mean free path of the detection table. */
 export const DEPTH_CELLS_PER_PATH = 32;
 
-/** One photon energy: how strong, where it is absorbed, and which energies it makes. */
+/** Photons absorbed in one slab of the sample: how many, where, and which energies they make. */
 export interface PhotonSourceInput {
   /** Relative number of absorbed photons, >= 0. */
   readonly weight: number;
-  /** Mean depth of absorption along the surface normal, nm, > 0. */
+  /** Decay length of the absorption along the surface normal, nm, > 0. */
   readonly absorptionDepthNm: number;
   /** Weights of the final bins, shape (grid.count), not normalized; all zero where nothing can be excited. */
   readonly excitation: Float64Array;
+  /** Layer of the stack. Default: 0. */
+  readonly layer?: number;
+  /** Upper face of the slab, nm. Default: 0 nm. */
+  readonly topNm?: number;
+  /** Thickness of the slab, nm. Default: Infinity. */
+  readonly thicknessNm?: number;
 }
 
-/** The first event of all histories as one alias row over (photon energy, final bin). */
+/** The first event of all histories as one alias row over (slab, photon energy, final bin). */
 export interface PhotonSource {
   /** Alias row. */
   readonly table: Uint32Array;
   /** Final bin of each outcome. */
   readonly bins: Int32Array;
-  /** Mean absorption depth of each outcome, nm. */
+  /** Layer of each outcome. */
+  readonly layers: Int32Array;
+  /** Upper face of the slab of each outcome, nm. */
+  readonly topsNm: Float64Array;
+  /** Decay length of the absorption, nm. */
   readonly depthsNm: Float64Array;
+  /** Share of the light that the slab would absorb of what enters it, `1 - exp(-thickness / depth)`. */
+  readonly spans: Float64Array;
   /** Probability of each outcome; they add up to one. */
   readonly probabilities: Float64Array;
+}
+
+/** A part of the surface with its own barrier, acceptance or tilt. */
+export interface SurfacePart {
+  /** Share of the area, > 0; shares are normalized. */
+  readonly share: number;
+  /** Its detection table; all parts share one grid. */
+  readonly detection: DetectionTable;
 }
 
 /** What a batch of histories adds up to; every array has one entry per energy bin. */
@@ -58,25 +78,32 @@ export function emptyBatchTally(count: number): BatchTally {
 }
 
 /**
- * Joins photon energies into the source of all histories.
+ * Joins slabs and photon energies into the source of all histories.
  *
  * Final bins below the vacuum level are kept as outcomes, so that scores stay "per absorbed photon".
  *
- * @param inputs One or more photon energies.
+ * @param inputs One or more slabs and photon energies.
  * @returns The source, or null when no absorbed photon excites anything.
  */
 export function photonSource(inputs: readonly PhotonSourceInput[]): PhotonSource | null {
   const weights: number[] = [];
   const bins: number[] = [];
+  const layers: number[] = [];
+  const tops: number[] = [];
   const depths: number[] = [];
+  const spans: number[] = [];
   for (const input of inputs) {
     const sum = input.excitation.reduce((total, value) => total + value, 0);
     if (sum === 0 || input.weight === 0) continue;
+    const span = -Math.expm1(-(input.thicknessNm ?? Infinity) / input.absorptionDepthNm);
     input.excitation.forEach((value, bin) => {
       if (value === 0) return;
       weights.push((input.weight * value) / sum);
       bins.push(bin);
+      layers.push(input.layer ?? 0);
+      tops.push(input.topNm ?? 0);
       depths.push(input.absorptionDepthNm);
+      spans.push(span);
     });
   }
   if (weights.length === 0) return null;
@@ -86,7 +113,10 @@ export function photonSource(inputs: readonly PhotonSourceInput[]): PhotonSource
   return {
     table,
     bins: Int32Array.from(bins),
+    layers: Int32Array.from(layers),
+    topsNm: Float64Array.from(tops),
     depthsNm: Float64Array.from(depths),
+    spans: Float64Array.from(spans),
     probabilities: Float64Array.from(weights, (weight) => weight / total),
   };
 }
@@ -98,28 +128,38 @@ export function photonSource(inputs: readonly PhotonSourceInput[]): PhotonSource
  * the exponential depth distribution, cell by cell.
  *
  * @param source First event.
- * @param tables Scattering.
- * @param detection Barrier and acceptance; made for the same grid.
+ * @param stack Scattering.
+ * @param surface Barriers and acceptances; made for the same grid.
  * @returns Expected electrons per absorbed photon, shape (grid.count).
  */
 export function directYield(
   source: PhotonSource,
-  tables: PairTables,
-  detection: DetectionTable,
+  stack: LayerStack,
+  surface: readonly SurfacePart[],
 ): Float64Array {
-  const { vacuumBin, count } = tables.grid;
-  const { probability, cells } = detection;
+  const { vacuumBin, count } = stack.grid;
   const direct = new Float64Array(count);
+  const area = surface.reduce((sum, part) => sum + part.share, 0);
   source.bins.forEach((bin, outcome) => {
     if (bin < vacuumBin) return;
-    const cellDepths = tables.totalMeanFreePathNm[bin] / DEPTH_CELLS_PER_PATH / source.depthsNm[outcome];
-    const decay = Math.exp(-cellDepths);
-    let absorbed = -Math.expm1(-cellDepths);
-    let sum = 0;
-    for (let c = 0; c < cells; c++, absorbed *= decay) {
-      sum += absorbed * probability[(bin - vacuumBin) * cells + c];
+    const row = source.layers[outcome] * count + bin;
+    const depthNm = source.depthsNm[outcome];
+    const cellNm = stack.pathNm[row] / DEPTH_CELLS_PER_PATH;
+    const slabNm = -depthNm * Math.log1p(-source.spans[outcome]); // its thickness
+    // Depth of the slab's upper face below that of its layer, in cells; where it lies in the layer and in all.
+    const from = source.topsNm[outcome] - stack.topsNm[source.layers[outcome]];
+    const cellsAbove = (stack.topPaths[row] + from * stack.pathsPerNm[row]) * DEPTH_CELLS_PER_PATH;
+    for (const { share, detection: { probability, cells } } of surface) {
+      const first = (bin - vacuumBin) * cells;
+      let sum = 0;
+      for (let c = Math.floor(cellsAbove); c < cells; c++) {
+        const upperNm = c > cellsAbove ? (c - cellsAbove) * cellNm : 0;
+        const lowerNm = Math.min(slabNm, (c + 1 - cellsAbove) * cellNm);
+        if (!(lowerNm > upperNm)) break;
+        sum += (Math.exp(-upperNm / depthNm) - Math.exp(-lowerNm / depthNm)) * probability[first + c];
+      }
+      direct[bin] += (source.probabilities[outcome] * (share / area) * sum) / source.spans[outcome];
     }
-    direct[bin] += source.probabilities[outcome] * sum;
   });
   return direct;
 }
@@ -132,51 +172,64 @@ export function directYield(
  * which knows its expectation exactly. The flight itself is analogue, and an electron
  * that really leaves is counted in the analogue tally with the same energies and angles, so both tallies estimate the
  * same expectation. Directions after an event are isotropic. What does not pass the barrier is reflected inward.
- * The energy inside a bin is uniform and drawn anew at each encounter with the surface.
+ * The energy inside a bin is uniform and drawn anew at each encounter with the surface. Directions do not change at
+ * the faces between layers. Each history belongs to one part of the surface.
  *
  * @param source First event.
- * @param tables Scattering.
- * @param detection Barrier and acceptance; made for the same grid.
+ * @param stack Scattering.
+ * @param parts Barriers and acceptances; made for the same grid.
  * @returns A function that runs batch number `batch` of seed `seed`, {@link HISTORIES_PER_BATCH} histories.
  */
 export function historyRunner(
   source: PhotonSource,
-  tables: PairTables,
-  detection: DetectionTable,
+  stack: LayerStack,
+  parts: readonly SurfacePart[],
 ): Histories {
-  const { grid, lossTable, lossOffset, lossCount, struckTable, struckOffset, struckCount, inelasticShare } =
-    tables;
-  const { vacuumBin, stepEv, count } = grid;
-  const { probability, cells, input: surface } = detection;
+  const { lossTable, lossOffset, lossCount, struckTable, struckOffset, struckCount, inelasticShare } = stack;
+  const { layers, transfers, topsNm, topPaths, pathNm, pathsPerNm } = stack;
+  const { vacuumBin, stepEv, count } = stack.grid;
+  const { cells } = parts[0].detection;
   const outcomes = source.table.length;
-  const cellsPerNm = tables.totalMeanFreePathNm.map((length) => DEPTH_CELLS_PER_PATH / length);
-  const pathNm = tables.totalMeanFreePathNm;
-  const stackBins = new Int32Array(count + 64);
-  const stackDepths = new Float64Array(count + 64);
+  const partTable = new Uint32Array(parts.length);
+  writeAliasRow(parts.map((part) => part.share), partTable, 0);
+  const capacity = count + 64;
+  const stackBins = new Int32Array(capacity);
+  const stackDepths = new Float64Array(capacity);
+  const stackLayers = new Int32Array(capacity);
 
   return (seed, batch, tally) => {
     const generator = new Xoshiro128pp(streamState(seed, "transport", batch));
     const { forced, analogue, events } = tally;
+    let { probability, input: surface } = parts[0].detection;
     for (let history = 0; history < HISTORIES_PER_BATCH; history++) {
+      if (parts.length > 1) {
+        ({ probability, input: surface } =
+          parts[sampleAlias(partTable, 0, parts.length, generator)].detection);
+      }
       const first = sampleAlias(source.table, 0, outcomes, generator);
       stackBins[0] = source.bins[first];
-      stackDepths[0] = -Math.log(generator.nextUniform()) * source.depthsNm[first];
+      stackLayers[0] = source.layers[first];
+      stackDepths[0] = source.topsNm[first] -
+        Math.log(1 - generator.nextUniform() * source.spans[first]) * source.depthsNm[first];
       let pending = 1;
       let scattered = false;
       while (pending > 0) {
         pending--;
         let bin = stackBins[pending];
         let depthNm = stackDepths[pending];
+        let layer = stackLayers[pending];
         while (bin >= vacuumBin) {
+          let row = layer * count + bin;
+          let paths = topPaths[row] + (depthNm - topsNm[layer]) * pathsPerNm[row];
           if (scattered) {
-            const cell = depthNm * cellsPerNm[bin];
+            const cell = paths * DEPTH_CELLS_PER_PATH;
             if (cell < cells) forced[bin] += probability[(bin - vacuumBin) * cells + (cell | 0)];
           }
           scattered = true;
 
           const cosine = 2 * generator.nextUniform() - 1;
-          depthNm += Math.log(generator.nextUniform()) * pathNm[bin] * cosine;
-          if (depthNm < 0) {
+          paths += Math.log(generator.nextUniform()) * cosine;
+          if (paths < 0) {
             const energyEv = (bin + generator.nextUniform()) * stepEv;
             const passes = barrierTransmission(surface, energyEv, cosine);
             if (passes > 0 && (passes === 1 || generator.nextUniform() < passes)) {
@@ -184,20 +237,31 @@ export function historyRunner(
               if (accepted === 1 || (accepted > 0 && generator.nextUniform() < accepted)) analogue[bin]++;
               break;
             }
-            depthNm = -depthNm;
+            paths = -paths;
           }
+          if (layers > 1) {
+            layer = 0;
+            row = bin;
+            while (layer + 1 < layers && paths >= topPaths[row + count]) {
+              layer++;
+              row += count;
+            }
+          }
+          depthNm = topsNm[layer] + (paths - topPaths[row]) * pathNm[row];
           // An infinite path (no event possible) that did not leave has gone for good; the negation also stops NaN.
           if (!(depthNm < Infinity)) break;
 
-          if (inelasticShare[bin] < 1 && generator.nextUniform() >= inelasticShare[bin]) continue;
+          if (inelasticShare[row] < 1 && generator.nextUniform() >= inelasticShare[row]) continue;
           events[bin]++;
-          const transfer = sampleAlias(lossTable, lossOffset[bin], lossCount[bin], generator);
-          const choices = struckCount[transfer];
+          const transfer = sampleAlias(lossTable, lossOffset[row], lossCount[row], generator);
+          const struckRow = layer * transfers + transfer;
+          const choices = struckCount[struckRow];
           if (choices > 0) {
-            const struck = sampleAlias(struckTable, struckOffset[transfer], choices, generator);
+            const struck = sampleAlias(struckTable, struckOffset[struckRow], choices, generator);
             if (struck < choices - 1) {
               stackBins[pending] = vacuumBin + struck;
               stackDepths[pending] = depthNm;
+              stackLayers[pending] = layer;
               pending++;
             }
           }

@@ -2,7 +2,7 @@
  * Room `transport`: electrons between the photon and the vacuum. Pure: no files, no clock, no workers.
  *
  * `pair_tables.ts` holds the physics of electron-electron scattering as sampling tables, `excitation.ts` the first
- * step (where and at which energy photoelectrons start), `detection.ts` the last step (probability of reaching the
+ * step (where and at which energy photoelectrons start), `stack.ts` several layers as one, `detection.ts` the last step (probability of reaching the
  * analyzer), `kernel.ts` the histories, `tally.ts` the sums and their standard errors.
  *
  * @module
@@ -28,5 +28,7 @@ export {
   type PhotonSource,
   photonSource,
   type PhotonSourceInput,
+  type SurfacePart,
 } from "./kernel.ts";
+export { type Layer, type LayerStack, layerStack } from "./stack.ts";
 export { type Tally, TallyAccumulator } from "./tally.ts";
