@@ -1,19 +1,23 @@
 import { interpolateLinear } from "../math/mod.ts";
 import { densityOfStates } from "../sample/mod.ts";
-import type { ResolvedScenario } from "../scenario/mod.ts";
+import type { ResolvedLayer, ResolvedLine, ResolvedScenario } from "../scenario/mod.ts";
+import { accelerationEv } from "../instrument/mod.ts";
 import {
   DEPTH_CELLS_PER_PATH,
-  type DetectionTable,
   detectionTable,
   directYield,
+  type EnergyGrid,
   energyGrid,
   excitationWeights,
   type Histories,
   historyRunner,
-  type PairTables,
+  type LayerStack,
+  layerStack,
   pairTables,
   type PhotonSource,
   photonSource,
+  type PhotonSourceInput,
+  type SurfacePart,
 } from "../transport/mod.ts";
 
 /** Depth, in mean free paths, beyond which an electron is not scored: exp(-16) = 1e-7. */
@@ -22,6 +26,9 @@ const DEEPEST_PATHS = 16;
 /** Photon energies that stand for a Gaussian band, and how far they reach in standard deviations. */
 const BAND_POINTS = 33;
 const BAND_REACH_SIGMAS = 4;
+
+/** Slabs of equal thickness that stand for a profile of band bending. */
+const BENDING_SLABS = 16;
 
 /** Everything the histories need, as plain data that can be sent to a worker. */
 export interface EngineData {
@@ -48,49 +55,57 @@ export interface Engine extends EngineData {
  * @returns Plain data.
  */
 export function engineData(resolved: ResolvedScenario): EngineData {
-  const { thermalEnergyEv, workFunctionEv, bandBottomBelowFermiEv } = resolved;
-  const states = resolved.states.kind === "model"
-    ? densityOfStates(resolved.states.model)
-    : tableFunction(resolved.states.energiesEv, resolved.states.values, 0);
-  const lines = resolved.lines.map((line) => ({ ...line, photons: bandPoints(line.energyEv, line.fwhmEv) }));
+  const { thermalEnergyEv, layers } = resolved;
+  const photons = resolved.lines.map((line) => bandPoints(line.energyEv, line.fwhmEv));
   const grid = energyGrid(resolved.energyStepEv, {
-    photonEnergyEv: Math.max(...lines.flatMap((line) => line.photons.map((photon) => photon.energyEv))),
-    workFunctionEv,
+    photonEnergyEv: Math.max(...photons.flat().map((photon) => photon.energyEv)),
+    workFunctionEv: Math.min(...resolved.surface.map((part) => part.workFunctionEv)),
     thermalEnergyEv,
   });
-  const tables = pairTables({
-    grid,
-    states,
-    bandBottomBelowFermiEv,
-    thermalEnergyEv,
-    inelasticMeanFreePath: resolved.meanFreePath.kind === "reference" ? resolved.meanFreePath : {
-      kind: "function",
-      lengthNm: tableFunction(resolved.meanFreePath.energiesEv, resolved.meanFreePath.values, null),
-    },
-    transportMeanFreePathNm: resolved.transportMeanFreePathNm,
-  });
-  const detection = detectionTable({
-    grid,
-    workFunctionEv,
-    bandBottomBelowFermiEv,
-    barrier: resolved.barrier,
-    accelerationEv: resolved.accelerationEv,
-    acceptanceHalfAngleRad: (resolved.acceptanceHalfAngleDeg * Math.PI) / 180,
-    emissionAngleRad: (resolved.emissionAngleDeg * Math.PI) / 180,
-    cellsPerPath: DEPTH_CELLS_PER_PATH,
-    deepestPaths: DEEPEST_PATHS,
-  });
-  const source = photonSource(lines.map((line) => {
-    const excitation = new Float64Array(grid.count);
-    for (const photon of line.photons) {
-      const weights = excitationWeights(grid, photon.energyEv, states, thermalEnergyEv);
-      const total = weights.reduce((sum, weight) => sum + weight, 0);
-      if (total > 0) weights.forEach((weight, bin) => excitation[bin] += (photon.weight * weight) / total);
-    }
-    return { weight: line.absorbedWeight, absorptionDepthNm: line.absorptionDepthNm, excitation };
+  const states = layers.map((layer) =>
+    layer.states.kind === "model"
+      ? densityOfStates(layer.states.model)
+      : tableFunction(layer.states.energiesEv, layer.states.values, 0)
+  );
+  const stack = layerStack(layers.map((layer, i) => ({
+    thicknessNm: layer.thicknessNm,
+    tables: pairTables({
+      grid,
+      states: states[i],
+      bandBottomBelowFermiEv: layer.bandBottomBelowFermiEv,
+      thermalEnergyEv,
+      inelasticMeanFreePath: meanFreePath(layer),
+      transportMeanFreePathNm: layer.transportMeanFreePathNm,
+    }),
+  })));
+  const surface = resolved.surface.map(({ share, workFunctionEv, facetTiltDeg }) => ({
+    share,
+    detection: detectionTable({
+      grid,
+      workFunctionEv,
+      bandBottomBelowFermiEv: layers[0].bandBottomBelowFermiEv,
+      barrier: resolved.barrier,
+      accelerationEv: accelerationEv(workFunctionEv, resolved.analyzerWorkFunctionEv, resolved.biasV),
+      acceptanceHalfAngleRad: radians(resolved.acceptanceHalfAngleDeg),
+      emissionAngleRad: radians(resolved.emissionAngleDeg),
+      facetTiltRad: radians(facetTiltDeg),
+      cellsPerPath: DEPTH_CELLS_PER_PATH,
+      deepestPaths: DEEPEST_PATHS,
+    }),
   }));
-  const direct = source === null ? new Float64Array(grid.count) : directYield(source, tables, detection);
-  return { source, tables, detection, direct };
+  const source = photonSource(
+    resolved.lines.flatMap((line, l) =>
+      layers.flatMap((_, i) =>
+        slabs(resolved, line, i).map(({ shiftEv, ...slab }) => ({
+          ...slab,
+          excitation: lineExcitation(grid, photons[l], (energyEv) =>
+            states[i](energyEv + shiftEv), thermalEnergyEv),
+        }))
+      )
+    ),
+  );
+  const direct = source === null ? new Float64Array(grid.count) : directYield(source, stack, surface);
+  return { source, stack, surface, direct };
 }
 
 /**
@@ -102,8 +117,66 @@ export function engineData(resolved: ResolvedScenario): EngineData {
 export function engineFrom(data: EngineData): Engine {
   return {
     ...data,
-    run: data.source === null ? null : historyRunner(data.source, data.tables, data.detection),
+    run: data.source === null ? null : historyRunner(data.source, data.stack, data.surface),
   };
+}
+
+function radians(degrees: number): number {
+  return (degrees * Math.PI) / 180;
+}
+
+function meanFreePath(
+  { meanFreePath: path }: ResolvedLayer,
+): Parameters<typeof pairTables>[0]["inelasticMeanFreePath"] {
+  if (path.kind === "reference") return path;
+  return { kind: "function", lengthNm: tableFunction(path.energiesEv, path.values, null) };
+}
+
+/** Where a layer absorbs a line; with band bending the substrate is cut into slabs of one shift each. */
+function slabs(
+  { layers, bandBending }: ResolvedScenario,
+  line: ResolvedLine,
+  layer: number,
+): (Omit<PhotonSourceInput, "excitation"> & { shiftEv: number })[] {
+  const { share, depthNm } = line.absorbed[layer];
+  const weight = line.absorbedWeight * share;
+  if (!(weight > 0)) return [];
+  const topNm = layers.slice(0, layer).reduce((sum, { thicknessNm }) => sum + thicknessNm, 0);
+  const { thicknessNm } = layers[layer];
+  if (bandBending === null || layer < layers.length - 1) {
+    return [{ weight, absorptionDepthNm: depthNm, layer, topNm, thicknessNm, shiftEv: 0 }];
+  }
+  const { surfaceShiftEv, widthNm } = bandBending;
+  const thin = widthNm / BENDING_SLABS;
+  return Array.from({ length: BENDING_SLABS + 1 }, (_, i) => {
+    const above = i * thin;
+    const last = i === BENDING_SLABS;
+    const thickness = last ? Infinity : thin;
+    return {
+      weight: weight * Math.exp(-above / depthNm) * -Math.expm1(-thickness / depthNm),
+      absorptionDepthNm: depthNm,
+      layer,
+      topNm: topNm + above,
+      thicknessNm: thickness,
+      // Parabolic (depletion approximation): V (1 - z/w)^2, taken at the middle of the slab.
+      shiftEv: last ? 0 : surfaceShiftEv * (1 - (i + 0.5) / BENDING_SLABS) ** 2,
+    };
+  });
+}
+
+function lineExcitation(
+  grid: EnergyGrid,
+  photons: readonly { readonly energyEv: number; readonly weight: number }[],
+  states: (energyEv: number) => number,
+  thermalEnergyEv: number,
+): Float64Array {
+  const excitation = new Float64Array(grid.count);
+  for (const photon of photons) {
+    const weights = excitationWeights(grid, photon.energyEv, states, thermalEnergyEv);
+    const total = weights.reduce((sum, weight) => sum + weight, 0);
+    if (total > 0) weights.forEach((weight, bin) => excitation[bin] += (photon.weight * weight) / total);
+  }
+  return excitation;
 }
 
 function tableFunction(

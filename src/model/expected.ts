@@ -44,7 +44,7 @@ export function expectedSpectrum(
   tally: Tally,
 ): ExpectedSpectrum {
   const { acquisition } = resolved;
-  const grid = engine.tables.grid;
+  const grid = engine.stack.grid;
   const channels = Math.floor((acquisition.endEv - acquisition.startEv) / acquisition.stepEv + 1e-6) + 1;
   const kineticEnergiesEv = Float64Array.from(
     { length: channels },

@@ -18,10 +18,14 @@ const TO_UNIT = 2 ** -32;
 export function writeAliasRow(weights: ArrayLike<number>, table: Uint32Array, offset: number): void {
   const count = weights.length;
   let total = 0;
-  for (let i = 0; i < count; i++) total += weights[i];
-  if (!(total > 0) || !Number.isFinite(total) || count >= THRESHOLD_STEPS) {
+  let least = 0;
+  for (let i = 0; i < count; i++) {
+    total += weights[i];
+    if (weights[i] < least) least = weights[i];
+  }
+  if (!(total > 0) || least < 0 || !Number.isFinite(total) || count >= THRESHOLD_STEPS) {
     throw new RangeError(
-      `Cannot build an alias row as it needs 1..65535 weights with a positive sum: current value is ${count} weights of sum ${total}`,
+      `Cannot build an alias row as it needs 1..65535 weights >= 0 with a positive sum: current value is ${count} weights of sum ${total}, least ${least}`,
     );
   }
   const scaled = Float64Array.from(weights, (weight) => (weight * count) / total);

@@ -42,7 +42,7 @@ export function batchesFor(histories: number): number {
  */
 export function runSeries(data: EngineData, seed: number, batches: number): Tally {
   const engine = engineFrom(data);
-  const count = data.tables.grid.count;
+  const count = data.stack.grid.count;
   const sums = new TallyAccumulator(count);
   for (let batch = 0; batch < batches; batch++) {
     const tally = emptyBatchTally(count);
@@ -68,7 +68,7 @@ export async function runHistories(
   batches: number,
   options: RunOptions,
 ): Promise<Tally> {
-  const sums = new TallyAccumulator(data.tables.grid.count);
+  const sums = new TallyAccumulator(data.stack.grid.count);
   if (data.source === null) return runSeries(data, seed, batches);
   const stop = new Int32Array(new SharedArrayBuffer(4));
   const requestStop = (): void => {

@@ -34,7 +34,7 @@ parentPort?.on("message", (message: ToWorker) => {
       stop = message.stop;
     } else if (engine?.run && stop) {
       for (let batch = message.from; batch < message.to && Atomics.load(stop, 0) === 0; batch++) {
-        const tally = emptyBatchTally(engine.tables.grid.count);
+        const tally = emptyBatchTally(engine.stack.grid.count);
         engine.run(seed, batch, tally);
         const buffers = Object.values(tally).map((array: Float64Array) => array.buffer as ArrayBuffer);
         post({ kind: "batch", batch, tally }, buffers);

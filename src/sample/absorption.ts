@@ -36,7 +36,8 @@ export function absorption(index: OpticalIndex, wavelengthNm: number, incidenceA
   const re2 = squaredRe - Math.sin(angle) ** 2;
   const modulus = Math.hypot(re2, squaredIm);
   const qRe = Math.sqrt(Math.max(0, 0.5 * (modulus + re2)));
-  const qIm = Math.sqrt(Math.max(0, 0.5 * (modulus - re2)));
+  // Im q by whichever form does not cancel: 2 Re q Im q = Im N^2.
+  const qIm = re2 > 0 ? squaredIm / (2 * qRe) : Math.sqrt(Math.max(0, 0.5 * (modulus - re2)));
   const reflectedS = ((cos - qRe) ** 2 + qIm ** 2) / ((cos + qRe) ** 2 + qIm ** 2);
   const pRe = squaredRe * cos;
   const pIm = squaredIm * cos;

@@ -7,17 +7,24 @@
 export type {
   AcquisitionSettings,
   AnalyzerSettings,
+  BandBendingSettings,
+  ChargingSettings,
   GeometrySettings,
+  LayerSettings,
   LightSettings,
+  PatchSettings,
   SampleSettings,
   Scenario,
   SimulationSettings,
+  SurfaceSettings,
 } from "./types.ts";
 export { parseScenario, scenarioJsonSchema } from "./parse.ts";
 export { applyOverrides } from "./overrides.ts";
 export {
+  type ResolvedLayer,
   type ResolvedLine,
   type ResolvedScenario,
+  type ResolvedSurfacePart,
   resolveScenario,
   type UserTable,
   type UserTables,

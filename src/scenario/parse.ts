@@ -157,7 +157,11 @@ export function parseScenario(text: string, fileName: string, overrides: readonl
   }
   const duplicates = duplicateKeys(tree);
   if (duplicates.length > 0) throw new InputError(duplicates);
-  const data = applyOverrides(getNodeValue(tree), overrides);
+  const data = applyOverrides(
+    getNodeValue(tree),
+    overrides,
+    (keys) => schemaAt(keys) instanceof z.ZodString,
+  );
   const checked = scenario.safeParse(data, { reportInput: true });
   const problems = checked.success ? crossChecks(checked.data) : checked.error.issues.flatMap(toProblems);
   if (problems.length > 0) throw new InputError(problems);
@@ -217,7 +221,11 @@ function crossChecks(data: Scenario): Problem[] {
   if (facetTiltDeg > 0 && data.geometry.emissionAngleDeg !== 0) {
     problems.push({
       place: "/sample/surface/facetTiltDeg",
-      message: cannot("use scenario", "facetTiltDeg must be 0 off normal emission", `${facetTiltDeg} degrees`),
+      message: cannot(
+        "use scenario",
+        "facetTiltDeg must be 0 off normal emission",
+        `${facetTiltDeg} degrees`,
+      ),
     });
   }
   return problems;

@@ -1,15 +1,11 @@
 import { cannot, InputError, type Notice, type Problem, suggest } from "../base/mod.ts";
-import {
-  BOLTZMANN_EV_PER_K,
-  HC_EV_NM,
-  lampLines,
-  type Material,
-  material,
-  opticalConstantsAt,
-} from "../data/mod.ts";
+import { BOLTZMANN_EV_PER_K, HC_EV_NM, type Material, material, opticalConstantsAt } from "../data/mod.ts";
 import { accelerationEv, hemisphereResolutionEv, kineticEnergyShiftEv } from "../instrument/mod.ts";
-import { absorption, type BandModel, densityOfStates } from "../sample/mod.ts";
-import type { AcquisitionSettings, Scenario } from "./types.ts";
+import { absorption, type BandModel } from "../sample/mod.ts";
+import { foresee } from "./foresee.ts";
+import { type LightLine, lightLines } from "./light.ts";
+import { surfaceParts } from "./surface.ts";
+import type { AcquisitionSettings, BandBendingSettings, Scenario } from "./types.ts";
 
 /** A table that the user keeps in a CSV file beside the scenario. */
 export interface UserTable {
@@ -35,24 +31,23 @@ export interface ResolvedLine {
   readonly energyEv: number;
   /** Full width at half maximum, eV. */
   readonly fwhmEv: number;
-  /** Relative number of photons absorbed, the main line about 1. */
+  /** Relative number of photons absorbed, all layers; adds up with the reflected ones to the line's share. */
   readonly absorbedWeight: number;
-  /** Mean absorption depth along the normal, nm. */
-  readonly absorptionDepthNm: number;
+  /** Where they are absorbed, layer by layer from the surface down. */
+  readonly absorbed: readonly {
+    /** Share of the absorbed photons; all layers add up to 1. */
+    readonly share: number;
+    /** Decay length along the normal, nm; Infinity where nothing is absorbed. */
+    readonly depthNm: number;
+  }[];
 }
 
-/** A scenario in which everything is a number; plain data. */
-export interface ResolvedScenario {
-  /** Title of the scenario. */
-  readonly title: string;
-  /** Work function, eV. */
-  readonly workFunctionEv: number;
-  /** Where the work function comes from. */
-  readonly workFunctionSource: string;
-  /** Temperature, K. */
-  readonly temperatureK: number;
-  /** kT, eV. */
-  readonly thermalEnergyEv: number;
+/** A film or the substrate, resolved. */
+export interface ResolvedLayer {
+  /** Material. */
+  readonly material: string;
+  /** Thickness, nm; Infinity for the substrate. */
+  readonly thicknessNm: number;
   /** Density of states: the material's band model, or the user's table. */
   readonly states:
     | { readonly kind: "model"; readonly model: BandModel }
@@ -65,6 +60,40 @@ export interface ResolvedScenario {
     | ({ readonly kind: "table" } & UserTable);
   /** Transport mean free path, nm, or null. */
   readonly transportMeanFreePathNm: number | null;
+}
+
+/** A part of the surface, resolved. */
+export interface ResolvedSurfacePart {
+  /** Share of the area; all parts add up to 1. */
+  readonly share: number;
+  /** Work function that electrons have to overcome, eV. */
+  readonly workFunctionEv: number;
+  /** Tilt of its facets, degrees. */
+  readonly facetTiltDeg: number;
+}
+
+/** A scenario in which everything is a number; plain data. */
+export interface ResolvedScenario {
+  /** Title of the scenario. */
+  readonly title: string;
+  /** Work function, eV: the area mean where the surface is not uniform. */
+  readonly workFunctionEv: number;
+  /** Where the work function comes from. */
+  readonly workFunctionSource: string;
+  /** Parts of the surface. */
+  readonly surface: readonly ResolvedSurfacePart[];
+  /** Temperature, K. */
+  readonly temperatureK: number;
+  /** kT, eV. */
+  readonly thermalEnergyEv: number;
+  /** Films from the surface down and the substrate. */
+  readonly layers: readonly ResolvedLayer[];
+  /** Band bending of the substrate, or null. */
+  readonly bandBending: BandBendingSettings | null;
+  /** Valence-band maximum of the substrate below the Fermi level, eV; null for a metal. */
+  readonly valenceMaximumBelowFermiEv: number | null;
+  /** Band gap of the substrate, eV; 0 for a metal. */
+  readonly gapEv: number;
   /** Surface barrier. */
   readonly barrier: "classical" | "quantum";
   /** Photon energies, the main one first. */
@@ -81,11 +110,9 @@ export interface ResolvedScenario {
   readonly analyzerWorkFunctionEv: number;
   /** Sample bias, V. */
   readonly biasV: number;
-  /** Recorded kinetic energy minus energy above the Fermi level, eV. */
+  /** Recorded kinetic energy minus energy above the Fermi level, charging included, eV. */
   readonly kineticEnergyShiftEv: number;
-  /** Energy gained between surface and analyzer, eV. */
-  readonly accelerationEv: number;
-  /** Resolution, full width at half maximum, eV. */
+  /** Resolution with the spread of the charging, full width at half maximum, eV. */
   readonly resolutionFwhmEv: number;
   /** Exponent of the transmission. */
   readonly transmissionExponent: number;
@@ -105,10 +132,10 @@ export interface ResolvedScenario {
 
 /** The pair kernel leaves out core levels and plasmons, so photon energies end here, eV. */
 const HIGHEST_PHOTON_EV = 60;
+/** No surface is known below this, and the grid needs a vacuum level above the Fermi level, eV. */
+const LEAST_WORK_FUNCTION_EV = 0.3;
 /** Bins of the transport grid; the tables grow with the square. */
 const MOST_BINS = 4000;
-/** A satellite's copy of deeper states that reaches this share of the Fermi step disturbs the fit of the edge. */
-const GHOST_SHARE = 0.1;
 
 /**
  * Looks up every name of a scenario and checks what only makes sense together.
@@ -130,34 +157,40 @@ export function resolveScenario(scenario: Scenario, tables: UserTables = {}): Re
       return undefined;
     }
   };
-  const { sample, light, geometry, analyzer, biasV } = scenario;
-  const chosen = attempt("/sample/material", () => material(sample.material));
-  const faceSource = chosen && attempt("/sample/face", () => faceWorkFunction(chosen, sample.face));
-  const lines = light.kind === "lamp"
-    ? attempt("/light/lamp", () => lampLines(light.lamp).slice(0, light.satellites ? undefined : 1))
-    : [{ name: "band", energyEv: light.centerEv, relativeIntensity: 1 }];
-  const fwhmEv = light.kind === "band" ? light.fwhmEv : 0;
-  const optics = chosen && lines
-    ? lines.map((line) =>
-      attempt(light.kind === "lamp" ? "/light/lamp" : "/light/centerEv", () => {
-        if (line.energyEv > HIGHEST_PHOTON_EV) {
-          throw new RangeError(
-            cannot(
-              "simulate light",
-              `photon energies must be <= ${HIGHEST_PHOTON_EV} eV`,
-              `${line.energyEv} eV`,
-            ),
-          );
-        }
-        return absorption(
-          opticalConstantsAt(chosen, line.energyEv),
-          HC_EV_NM / line.energyEv,
-          geometry.incidenceAngleDeg,
-        );
-      })
+  const { sample, geometry, analyzer, biasV } = scenario;
+  const substrate = attempt("/sample/material", () => material(sample.material));
+  const films = sample.layers.map((layer, i) =>
+    attempt(`/sample/layers/${i}/material`, () => material(layer.material))
+  );
+  const top = films.length > 0 ? films[0] : substrate;
+  const face = top && attempt("/sample/face", () => faceWorkFunction(top, sample.face));
+  const light = attempt("/light", () => lightLines(scenario.light));
+  if (substrate && sample.valenceMaximumBelowFermiEv !== null && !substrate.valenceMaximumBelowFermiEv) {
+    problems.push({
+      place: "/sample/valenceMaximumBelowFermiEv",
+      message: cannot(
+        "use scenario",
+        `it must be null for ${substrate.id}, which has no band gap`,
+        "a number",
+      ),
+    });
+  }
+  for (const [key, table] of USER_TABLES) {
+    if (sample[key] !== null && tables[table] === undefined) {
+      problems.push({
+        place: `/sample/${key}`,
+        message: cannot("use scenario", "the file must be readable", sample[key]),
+      });
+    }
+  }
+  const materials = [...films, substrate].flatMap((chosen) => chosen ?? []);
+  const thicknesses = [...sample.layers.map((layer) => layer.thicknessNm), Infinity];
+  const absorbed = light && materials.length === thicknesses.length
+    ? light.lines.map((line) =>
+      attempt("/light", () => absorbedLine(line, materials, thicknesses, geometry.incidenceAngleDeg))
     )
-    : undefined;
-  const highest = Math.max(...(lines ?? []).map((line) => line.energyEv + 2 * fwhmEv), 0);
+    : [];
+  const highest = Math.max(...(light?.lines ?? []).map((line) => line.energyEv + 2 * line.fwhmEv), 0);
   if (highest / scenario.simulation.energyStepEv > MOST_BINS) {
     problems.push({
       place: "/simulation/energyStepEv",
@@ -170,23 +203,13 @@ export function resolveScenario(scenario: Scenario, tables: UserTables = {}): Re
       ),
     });
   }
-  for (
-    const [key, table] of [["densityOfStatesFile", "densityOfStates"], [
-      "meanFreePathFile",
-      "meanFreePath",
-    ]] as const
-  ) {
-    if (sample[key] !== null && tables[table] === undefined) {
-      problems.push({
-        place: `/sample/${key}`,
-        message: cannot("use scenario", "the file must be readable", sample[key]),
-      });
-    }
-  }
-  if (problems.length > 0 || !chosen || !faceSource || !lines || !optics) throw new InputError(problems);
+  if (problems.length > 0 || !top || !substrate || !face || !light) throw new InputError(problems);
+  // A weak line beyond the optical tables is left out with a warning; the main line must be inside.
+  const lines = absorbed.flatMap((line) => (line === null || line === undefined ? [] : [line]));
+  const omitted = light.lines.filter((line) => !lines.some((known) => known.name === line.name));
 
-  const workFunctionEv = sample.workFunctionEv ?? faceSource.value;
-  const resolutionFwhmEv = analyzer.resolution.kind === "fwhm"
+  const { charging } = sample;
+  const ownResolutionEv = analyzer.resolution.kind === "fwhm"
     ? analyzer.resolution.fwhmEv
     : hemisphereResolutionEv(
       analyzer.resolution.passEnergyEv,
@@ -194,49 +217,62 @@ export function resolveScenario(scenario: Scenario, tables: UserTables = {}): Re
       analyzer.resolution.meanRadiusMm,
       (analyzer.resolution.slitHalfAngleDeg * Math.PI) / 180,
     );
-  const resolvedLines = lines.map((line, i) => ({
-    name: line.name,
-    energyEv: line.energyEv,
-    fwhmEv,
-    absorbedWeight: line.relativeIntensity * (1 - optics[i]!.reflectedFraction),
-    absorptionDepthNm: optics[i]!.meanDepthNm,
-  }));
-  const bandModel: BandModel = {
-    bandBottomBelowFermiEv: chosen.bandBottomBelowFermiEv.value,
-    spElectrons: chosen.spElectrons.value,
-    lobes: chosen.dLobes.map((lobe) => ({
-      centerBindingEv: lobe.centerBindingEv.value,
-      fwhmEv: lobe.fwhmEv.value,
-      electrons: lobe.electrons.value,
-    })),
-  };
+  const resolutionFwhmEv = Math.hypot(ownResolutionEv, charging.fwhmEv);
+  const surface = surfaceParts(sample.surface, sample.workFunctionEv ?? face.value, resolutionFwhmEv);
+  const lowest = Math.min(...surface.parts.map((part) => part.workFunctionEv));
+  if (!(lowest >= LEAST_WORK_FUNCTION_EV)) {
+    throw new InputError([{
+      place: "/sample/surface",
+      message: cannot(
+        "simulate",
+        `every work function must stay >= ${LEAST_WORK_FUNCTION_EV} eV after spread, dipoles and field`,
+        `${lowest.toFixed(3)} eV`,
+      ),
+    }]);
+  }
+  const maximum = sample.valenceMaximumBelowFermiEv ?? substrate.valenceMaximumBelowFermiEv?.value ?? null;
+  const layers = materials.map((chosen, i): ResolvedLayer => {
+    const isSubstrate = i === materials.length - 1;
+    const model = bandModel(chosen, isSubstrate ? maximum : null);
+    return {
+      material: chosen.id,
+      thicknessNm: thicknesses[i],
+      states: isSubstrate && tables.densityOfStates
+        ? { kind: "table", ...tables.densityOfStates }
+        : { kind: "model", model },
+      bandBottomBelowFermiEv: model.bandBottomBelowFermiEv,
+      meanFreePath: isSubstrate && tables.meanFreePath ? { kind: "table", ...tables.meanFreePath } : {
+        kind: "reference",
+        energyEv: chosen.lowEnergyMeanFreePath.energyAboveFermiEv.value,
+        lengthNm: chosen.lowEnergyMeanFreePath.lengthNm.value,
+      },
+      transportMeanFreePathNm: isSubstrate
+        ? sample.transportMeanFreePathNm
+        : sample.layers[i].transportMeanFreePathNm,
+    };
+  });
   const resolved: Omit<ResolvedScenario, "warnings"> = {
     title: scenario.title,
-    workFunctionEv,
-    workFunctionSource: sample.workFunctionEv === null ? faceSource.source : "scenario",
+    workFunctionEv: surface.meanWorkFunctionEv,
+    workFunctionSource: sample.workFunctionEv === null && sample.surface.patches.length === 0
+      ? face.source
+      : "scenario",
+    surface: surface.parts,
     temperatureK: sample.temperatureK,
     thermalEnergyEv: BOLTZMANN_EV_PER_K * sample.temperatureK,
-    states: tables.densityOfStates
-      ? { kind: "table", ...tables.densityOfStates }
-      : { kind: "model", model: bandModel },
-    bandBottomBelowFermiEv: bandModel.bandBottomBelowFermiEv,
-    meanFreePath: tables.meanFreePath ? { kind: "table", ...tables.meanFreePath } : {
-      kind: "reference",
-      energyEv: chosen.lowEnergyMeanFreePath.energyAboveFermiEv.value,
-      lengthNm: chosen.lowEnergyMeanFreePath.lengthNm.value,
-    },
-    transportMeanFreePathNm: sample.transportMeanFreePathNm,
+    layers,
+    bandBending: sample.bandBending,
+    valenceMaximumBelowFermiEv: maximum,
+    gapEv: substrate.bulk.gapEv.value,
     barrier: sample.barrier,
-    lines: resolvedLines,
+    lines,
     photonEnergyEv: lines[0].energyEv,
-    absorbedPhotonsPerS: light.photonFluxPerS *
-      resolvedLines.reduce((sum, line) => sum + line.absorbedWeight, 0),
+    absorbedPhotonsPerS: light.photonFluxPerS * lines.reduce((sum, line) => sum + line.absorbedWeight, 0),
     acceptanceHalfAngleDeg: analyzer.acceptanceHalfAngleDeg,
     emissionAngleDeg: geometry.emissionAngleDeg,
     analyzerWorkFunctionEv: analyzer.workFunctionEv,
     biasV,
-    kineticEnergyShiftEv: kineticEnergyShiftEv(analyzer.workFunctionEv, biasV),
-    accelerationEv: accelerationEv(workFunctionEv, analyzer.workFunctionEv, biasV),
+    kineticEnergyShiftEv: kineticEnergyShiftEv(analyzer.workFunctionEv, biasV) - charging.shiftEv,
     resolutionFwhmEv,
     transmissionExponent: analyzer.transmissionExponent,
     detectionFraction: analyzer.detectionFraction,
@@ -245,7 +281,85 @@ export function resolveScenario(scenario: Scenario, tables: UserTables = {}): Re
     seed: scenario.simulation.seed,
     energyStepEv: scenario.simulation.energyStepEv,
   };
-  return { ...resolved, warnings: foresee(resolved) };
+  const left = omitted.map((line): Notice => ({
+    code: "line-omitted",
+    place: "/light",
+    message: `${line.name} at ${
+      line.energyEv.toFixed(2)
+    } eV is left out: the optical constants end before it`,
+  }));
+  return { ...resolved, warnings: [...left, ...foresee(resolved)] };
+}
+
+const USER_TABLES = [
+  ["densityOfStatesFile", "densityOfStates"],
+  ["meanFreePathFile", "meanFreePath"],
+] as const;
+
+/**
+ * Where a line is absorbed: Beer-Lambert in each layer with the angle that Snell's law gives there, what enters by the
+ * Fresnel reflectance of the uppermost material. Null for a weak line beyond an optical table.
+ */
+function absorbedLine(
+  line: LightLine,
+  materials: readonly Material[],
+  thicknessesNm: readonly number[],
+  incidenceAngleDeg: number,
+): ResolvedLine | null {
+  if (line.energyEv > HIGHEST_PHOTON_EV) {
+    if (!line.main) return null;
+    throw new RangeError(
+      cannot("simulate light", `photon energies must be <= ${HIGHEST_PHOTON_EV} eV`, `${line.energyEv} eV`),
+    );
+  }
+  const inside = materials.map((chosen) => {
+    try {
+      return absorption(
+        opticalConstantsAt(chosen, line.energyEv),
+        HC_EV_NM / line.energyEv,
+        incidenceAngleDeg,
+      );
+    } catch (error) {
+      if (error instanceof RangeError && !line.main) return null;
+      throw error;
+    }
+  });
+  if (inside.some((layer) => layer === null)) return null;
+  let entering = 1;
+  const shares = inside.map((layer, i) => {
+    const share = entering * -Math.expm1(-thicknessesNm[i] / layer!.meanDepthNm);
+    entering -= share;
+    return share;
+  });
+  const total = shares.reduce((sum, share) => sum + share, 0);
+  return {
+    name: line.name,
+    energyEv: line.energyEv,
+    fwhmEv: line.fwhmEv,
+    absorbedWeight: line.weight * (1 - inside[0]!.reflectedFraction) * total,
+    absorbed: inside.map((layer, i) => ({
+      share: total > 0 ? shares[i] / total : 0,
+      depthNm: layer!.meanDepthNm,
+    })),
+  };
+}
+
+function bandModel(chosen: Material, maximumBelowFermiEv: number | null): BandModel {
+  const maximum = maximumBelowFermiEv ?? chosen.valenceMaximumBelowFermiEv?.value ?? null;
+  return {
+    bandBottomBelowFermiEv: chosen.bandBottomBelowFermiEv.value,
+    spElectrons: chosen.spElectrons.value,
+    lobes: chosen.dLobes.map((lobe) => ({
+      // Doping moves all bands of a semiconductor together.
+      centerBindingEv: lobe.centerBindingEv.value +
+        (maximum === null ? 0 : maximum - chosen.valenceMaximumBelowFermiEv!.value),
+      fwhmEv: lobe.fwhmEv.value,
+      electrons: lobe.electrons.value,
+    })),
+    gap: maximum === null || chosen.bulk.gapEv.value === 0
+      ? null
+      : { valenceMaximumBelowFermiEv: maximum, widthEv: chosen.bulk.gapEv.value },
+  };
 }
 
 function faceWorkFunction(chosen: Material, face: string): { value: number; source: string } {
@@ -260,104 +374,4 @@ function faceWorkFunction(chosen: Material, face: string): { value: number; sour
       face,
     ),
   }]);
-}
-
-/** What will hide or disturb the edges, from the numbers alone. */
-function foresee(r: Omit<ResolvedScenario, "warnings">): Notice[] {
-  const warnings: Notice[] = [];
-  const warn = (code: string, place: string, message: string): void =>
-    void warnings.push({ code, place, message });
-  const { startEv, endEv, stepEv } = r.acquisition;
-  const cutoffEv = r.workFunctionEv + r.kineticEnergyShiftEv;
-  const fermiEv = r.photonEnergyEv + r.kineticEnergyShiftEv;
-  const show = (energyEv: number): string => `${energyEv.toFixed(3)} eV`;
-  if (r.photonEnergyEv <= r.workFunctionEv) {
-    warn(
-      "below-threshold",
-      "/light",
-      `the photon energy ${show(r.photonEnergyEv)} is not above the work function ${
-        show(r.workFunctionEv)
-      }: only the thermal tail of the electrons can leave`,
-    );
-  }
-  if (cutoffEv <= 0) {
-    warn(
-      "cutoff-hidden",
-      "/biasV",
-      `the cutoff would be recorded at ${
-        show(cutoffEv)
-      }, below the analyzer's own limit at 0 eV: apply a bias below ${(r.biasV + cutoffEv).toFixed(2)} V`,
-    );
-  } else if (startEv > cutoffEv - r.resolutionFwhmEv) {
-    warn(
-      "cutoff-outside",
-      "/acquisition/startEv",
-      `the window starts at ${show(startEv)}, above the foot of the cutoff at ${show(cutoffEv)}`,
-    );
-  }
-  if (endEv < fermiEv + r.resolutionFwhmEv) {
-    warn(
-      "fermi-edge-outside",
-      "/acquisition/endEv",
-      `the window ends at ${show(endEv)}, before the Fermi edge at ${show(fermiEv)} is over`,
-    );
-  }
-  if (stepEv > 0.6 * r.resolutionFwhmEv) {
-    warn(
-      "step-coarse",
-      "/acquisition/stepEv",
-      `the step ${show(stepEv)} is coarse for a resolution of ${
-        show(r.resolutionFwhmEv)
-      }: take at most half of it`,
-    );
-  }
-  if (r.biasV > 0) {
-    warn(
-      "bias-retards",
-      "/biasV",
-      `a positive bias of ${r.biasV} V retards electrons; negative values accelerate them`,
-    );
-  }
-  if (r.emissionAngleDeg > r.acceptanceHalfAngleDeg && r.accelerationEv > 0) {
-    const tangent = Math.tan(((r.emissionAngleDeg - r.acceptanceHalfAngleDeg) * Math.PI) / 180);
-    warn(
-      "cutoff-displaced",
-      "/geometry/emissionAngleDeg",
-      `off normal the slowest electrons miss the analyzer: the cutoff appears ${
-        show(Math.max(0, cutoffEv) * tangent * tangent)
-      } too high`,
-    );
-  }
-  if (r.energyStepEv > 0.5 * r.resolutionFwhmEv) {
-    warn(
-      "grid-coarse",
-      "/simulation/energyStepEv",
-      `the transport grid of ${show(r.energyStepEv)} is coarse for a resolution of ${
-        show(r.resolutionFwhmEv)
-      }`,
-    );
-  }
-  if (r.states.kind === "model" && r.lines.length > 1) {
-    const states = densityOfStates(r.states.model);
-    for (const line of r.lines.slice(1)) {
-      const shift = line.energyEv - r.photonEnergyEv;
-      const share = (line.absorbedWeight * states(-shift)) / (r.lines[0].absorbedWeight * states(0));
-      if (shift < 0 && shift > -3) {
-        warn(
-          "satellite-edge-below",
-          "/light",
-          `${line.name} makes a second Fermi edge ${show(-shift)} below the main one`,
-        );
-      } else if (shift > 0 && share > GHOST_SHARE) {
-        warn(
-          "satellite-under-edge",
-          "/light",
-          `${line.name} puts its copy of the states at ${show(shift)} binding energy under the Fermi edge, ${
-            (100 * share).toFixed(0)
-          } % of its step`,
-        );
-      }
-    }
-  }
-  return warnings;
 }

@@ -9,7 +9,7 @@ export function assertClose(
 ): void {
   const allowed = (tolerance.absolute ?? 0) + (tolerance.relative ?? 0) * Math.abs(expected);
   const delta = Math.abs(actual - expected);
-  if (!(delta <= allowed)) {
+  if (!(delta <= allowed && Number.isFinite(expected))) {
     throw new AssertionError({
       message: `${label}: actual ${actual}, expected ${expected}, difference ${delta}, allowed ${allowed}`,
       actual,
