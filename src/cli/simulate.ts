@@ -90,11 +90,13 @@ export async function loadScenario(path: string, overrides: readonly string[]): 
     }).regions;
     return { energiesEv: Array.from(region.energiesEv), values: Array.from(region.counts) };
   };
+  const light = await table(scenario.light.kind === "table" ? scenario.light.file : null, "photons_per_ev");
   const densityOfStates = await table(scenario.sample.densityOfStatesFile, "states_per_ev");
   const meanFreePath = await table(scenario.sample.meanFreePathFile, "length_nm");
   const tables: UserTables = {
     ...(densityOfStates && { densityOfStates }),
     ...(meanFreePath && { meanFreePath }),
+    ...(light && { light }),
   };
   const resolved = resolveScenario(scenario, tables);
   const { warnings: _, ...identity } = resolved;

@@ -23,10 +23,6 @@ import {
 /** Depth, in mean free paths, beyond which an electron is not scored: exp(-16) = 1e-7. */
 const DEEPEST_PATHS = 16;
 
-/** Photon energies that stand for a Gaussian band, and how far they reach in standard deviations. */
-const BAND_POINTS = 33;
-const BAND_REACH_SIGMAS = 4;
-
 /** Slabs of equal thickness that stand for a profile of band bending. */
 const BENDING_SLABS = 16;
 
@@ -56,9 +52,10 @@ export interface Engine extends EngineData {
  */
 export function engineData(resolved: ResolvedScenario): EngineData {
   const { thermalEnergyEv, layers } = resolved;
-  const photons = resolved.lines.map((line) => bandPoints(line.energyEv, line.fwhmEv));
   const grid = energyGrid(resolved.energyStepEv, {
-    photonEnergyEv: Math.max(...photons.flat().map((photon) => photon.energyEv)),
+    photonEnergyEv: Math.max(
+      ...resolved.lines.flatMap(({ photons }) => photons.map((photon) => photon.energyEv)),
+    ),
     workFunctionEv: Math.min(...resolved.surface.map((part) => part.workFunctionEv)),
     thermalEnergyEv,
   });
@@ -94,11 +91,11 @@ export function engineData(resolved: ResolvedScenario): EngineData {
     }),
   }));
   const source = photonSource(
-    resolved.lines.flatMap((line, l) =>
+    resolved.lines.flatMap((line) =>
       layers.flatMap((_, i) =>
         slabs(resolved, line, i).map(({ shiftEv, ...slab }) => ({
           ...slab,
-          excitation: lineExcitation(grid, photons[l], (energyEv) =>
+          excitation: lineExcitation(grid, line.photons, (energyEv) =>
             states[i](energyEv + shiftEv), thermalEnergyEv),
         }))
       )
@@ -190,16 +187,4 @@ function tableFunction(
     outside !== null && (energyEv < low || energyEv > high)
       ? outside
       : interpolateLinear(energiesEv, values, energyEv);
-}
-
-/** A Gaussian band as equidistant photon energies with weights that add up to one. */
-function bandPoints(centerEv: number, fwhmEv: number): { energyEv: number; weight: number }[] {
-  if (fwhmEv === 0) return [{ energyEv: centerEv, weight: 1 }];
-  const sigma = fwhmEv / (2 * Math.sqrt(2 * Math.LN2));
-  const points = Array.from({ length: BAND_POINTS }, (_, i) => {
-    const distance = BAND_REACH_SIGMAS * (-1 + (2 * i) / (BAND_POINTS - 1));
-    return { energyEv: centerEv + distance * sigma, weight: Math.exp(-0.5 * distance * distance) };
-  }).filter((point) => point.energyEv > 0);
-  const total = points.reduce((sum, point) => sum + point.weight, 0);
-  return points.map((point) => ({ ...point, weight: point.weight / total }));
 }

@@ -1,42 +1,122 @@
-import { lampLines } from "../data/mod.ts";
+import { bandLight, lampLight, type LightPoint, tabulatedLight, thermalLight } from "../light/mod.ts";
+import { cannot, InputError, type Notice } from "../base/mod.ts";
+import type { UserTables } from "./resolve.ts";
 import type { LightSettings } from "./types.ts";
 
-/** One photon energy of the source. */
-export interface LightLine {
+/** Photons of one line, or of a stretch of a continuous spectrum over which a sample's optical constants hardly change. */
+export interface LightGroup {
   /** Name. */
   readonly name: string;
-  /** Photon energy, eV. */
+  /** Mean photon energy, eV. */
   readonly energyEv: number;
-  /** Full width at half maximum, eV. */
-  readonly fwhmEv: number;
-  /** Share of the photons; all lines add up to 1. */
+  /** Share of the photons; all groups add up to 1. */
   readonly weight: number;
-  /** `true` for the strongest line, which the sample's tables must cover. */
-  readonly main: boolean;
+  /** Its photon energies, eV, with shares that add up to 1. */
+  readonly photons: readonly { readonly energyEv: number; readonly weight: number }[];
+  /** `true` where the optical tables of the sample must reach; weak lines beyond them may be left out. */
+  readonly needed: boolean;
 }
 
+/** Photon energies that stand for a Gaussian band, and how far they reach in standard deviations. */
+const BAND_POINTS = 33;
+const BAND_REACH_SIGMAS = 4;
+const FWHM_PER_SIGMA = 2 * Math.sqrt(2 * Math.LN2);
+/** Width of the stretches of a continuous spectrum, eV: optical constants change by some percent. */
+const STRETCH_EV = 0.25;
+/** Step of Planck's spectrum, eV: finer than kT at room temperature. */
+const THERMAL_STEP_EV = 0.01;
+/** A pulse that emits more electrons than this per spot broadens and shifts the spectrum (common practice, no source). */
+const SPACE_CHARGE_PHOTONS = 1e7;
+
 /**
- * The photon energies of a light source, the main one first.
+ * The photon energies of a light source, the strongest group first.
  *
  * @param light Settings.
- * @returns Lines with shares, and the flux of all of them together.
+ * @param tables The user's tables.
+ * @returns Groups with shares, and warnings.
+ * @throws {InputError} If a table is missing or a window is empty.
  */
-export function lightLines(
+export function lightGroups(
   light: LightSettings,
-): { readonly lines: readonly LightLine[]; readonly photonFluxPerS: number } {
-  const { photonFluxPerS } = light;
-  if (light.kind === "band") {
-    const { centerEv: energyEv, fwhmEv } = light;
-    return { lines: [{ name: "band", energyEv, fwhmEv, weight: 1, main: true }], photonFluxPerS };
+  tables: UserTables,
+): { readonly groups: readonly LightGroup[]; readonly warnings: readonly Notice[] } {
+  switch (light.kind) {
+    case "lamp":
+      return {
+        groups: lampLight(light.lamp, light.satellites).map((point, i) => line(point, i === 0)),
+        warnings: [],
+      };
+    case "band":
+      return {
+        groups: bandLight(light.centerEv, light.fwhmEv).map((point) => line(point, true)),
+        warnings: [],
+      };
+    case "laser": {
+      const photonsPerPulse = light.photonFluxPerS / light.repetitionHz;
+      return {
+        groups: bandLight(light.photonEnergyEv, light.bandwidthEv).map((point) => line(point, true)),
+        warnings: photonsPerPulse < SPACE_CHARGE_PHOTONS ? [] : [{
+          code: "space-charge",
+          place: "/light/repetitionHz",
+          message: `${
+            photonsPerPulse.toPrecision(2)
+          } photons arrive in one pulse: electrons may repel each other, which is not modeled`,
+        }],
+      };
+    }
+    case "table": {
+      if (tables.light === undefined) {
+        throw new InputError([{
+          place: "/light/file",
+          message: cannot("use scenario", "the file must be readable", light.file),
+        }]);
+      }
+      return {
+        groups: stretches(tabulatedLight(tables.light.energiesEv, tables.light.values)),
+        warnings: [],
+      };
+    }
+    case "thermal": {
+      const window = { lowEv: light.lowEv, highEv: light.highEv, stepEv: THERMAL_STEP_EV };
+      return { groups: stretches(thermalLight(light.temperatureK, window)), warnings: [] };
+    }
   }
-  const chosen = lampLines(light.lamp).slice(0, light.satellites ? undefined : 1);
-  const total = chosen.reduce((sum, line) => sum + line.relativeIntensity, 0);
-  const lines = chosen.map((line, i) => ({
-    name: line.name,
-    energyEv: line.energyEv,
-    fwhmEv: 0,
-    weight: line.relativeIntensity / total,
-    main: i === 0,
-  }));
-  return { lines, photonFluxPerS };
+}
+
+function line(point: LightPoint, needed: boolean): LightGroup {
+  const { name, energyEv, weight } = point;
+  return { name, energyEv, weight, photons: bandPoints(energyEv, point.gaussFwhmEv), needed };
+}
+
+/** A Gaussian band as equidistant photon energies with weights that add up to one. */
+function bandPoints(centerEv: number, fwhmEv: number): { energyEv: number; weight: number }[] {
+  if (fwhmEv === 0) return [{ energyEv: centerEv, weight: 1 }];
+  const sigma = fwhmEv / FWHM_PER_SIGMA;
+  const points = Array.from({ length: BAND_POINTS }, (_, i) => {
+    const distance = BAND_REACH_SIGMAS * (-1 + (2 * i) / (BAND_POINTS - 1));
+    return { energyEv: centerEv + distance * sigma, weight: Math.exp(-0.5 * distance * distance) };
+  }).filter((point) => point.energyEv > 0);
+  return shares(points);
+}
+
+function shares(
+  points: readonly { readonly energyEv: number; readonly weight: number }[],
+): { energyEv: number; weight: number }[] {
+  const total = points.reduce((sum, point) => sum + point.weight, 0);
+  return points.map(({ energyEv, weight }) => ({ energyEv, weight: weight / total }));
+}
+
+/** Cuts a continuous spectrum into stretches, the one with most photons first. */
+function stretches(points: readonly LightPoint[]): LightGroup[] {
+  const cuts = new Map<number, LightPoint[]>();
+  for (const point of points) {
+    if (point.weight === 0) continue;
+    const cut = Math.floor(point.energyEv / STRETCH_EV);
+    cuts.set(cut, [...(cuts.get(cut) ?? []), point]);
+  }
+  return [...cuts.values()].map((inside) => {
+    const weight = inside.reduce((sum, point) => sum + point.weight, 0);
+    const energyEv = inside.reduce((sum, point) => sum + point.energyEv * point.weight, 0) / weight;
+    return { name: `${energyEv.toFixed(2)} eV`, energyEv, weight, photons: shares(inside), needed: true };
+  }).sort((a, b) => b.weight - a.weight);
 }

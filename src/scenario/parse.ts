@@ -47,20 +47,38 @@ const sample = z.strictObject({
   charging: charging.default(() => charging.parse({})),
 });
 
-const photonFluxPerS = z.number().positive().max(1e20).default(1e10);
+const common = {
+  photonFluxPerS: z.number().positive().max(1e20).default(1e10),
+  polarization: z.enum(["none", "s", "p"]).default("none"),
+};
 
 const light = z.discriminatedUnion("kind", [
   z.strictObject({
     kind: z.literal("lamp"),
     lamp: z.enum(LAMP_NAMES),
     satellites: z.boolean().default(true),
-    photonFluxPerS,
+    ...common,
   }),
   z.strictObject({
     kind: z.literal("band"),
     centerEv: energy(1, 60),
     fwhmEv: energy(0, 5).default(0),
-    photonFluxPerS,
+    ...common,
+  }),
+  z.strictObject({ kind: z.literal("table"), file: z.string().min(1), ...common }),
+  z.strictObject({
+    kind: z.literal("thermal"),
+    temperatureK: z.number().min(500).max(6000),
+    lowEv: energy(0.5, 20),
+    highEv: energy(0.5, 20),
+    ...common,
+  }),
+  z.strictObject({
+    kind: z.literal("laser"),
+    photonEnergyEv: energy(1, 12),
+    bandwidthEv: energy(0, 1).default(0.002),
+    repetitionHz: z.number().min(1).max(1e10).default(1e6),
+    ...common,
   }),
 ]);
 

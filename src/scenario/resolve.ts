@@ -1,9 +1,9 @@
 import { cannot, InputError, type Notice, type Problem, suggest } from "../base/mod.ts";
 import { BOLTZMANN_EV_PER_K, HC_EV_NM, type Material, material, opticalConstantsAt } from "../data/mod.ts";
 import { accelerationEv, hemisphereResolutionEv, kineticEnergyShiftEv } from "../instrument/mod.ts";
-import { absorption, type BandModel } from "../sample/mod.ts";
+import { type BandModel, layeredAbsorption, type Polarization } from "../sample/mod.ts";
 import { foresee } from "./foresee.ts";
-import { type LightLine, lightLines } from "./light.ts";
+import { type LightGroup, lightGroups } from "./light.ts";
 import { surfaceParts } from "./surface.ts";
 import type { AcquisitionSettings, BandBendingSettings, Scenario } from "./types.ts";
 
@@ -21,16 +21,18 @@ export interface UserTables {
   readonly densityOfStates?: UserTable;
   /** For `sample.meanFreePathFile`. */
   readonly meanFreePath?: UserTable;
+  /** For `light.file`: photon energies, eV, and photons per eV. */
+  readonly light?: UserTable;
 }
 
 /** One photon energy, resolved. */
 export interface ResolvedLine {
   /** Name of the line. */
   readonly name: string;
-  /** Photon energy, eV. */
+  /** Mean photon energy, eV. */
   readonly energyEv: number;
-  /** Full width at half maximum, eV. */
-  readonly fwhmEv: number;
+  /** Its photon energies, eV, with shares that add up to 1. */
+  readonly photons: readonly { readonly energyEv: number; readonly weight: number }[];
   /** Relative number of photons absorbed, all layers; adds up with the reflected ones to the line's share. */
   readonly absorbedWeight: number;
   /** Where they are absorbed, layer by layer from the surface down. */
@@ -164,7 +166,7 @@ export function resolveScenario(scenario: Scenario, tables: UserTables = {}): Re
   );
   const top = films.length > 0 ? films[0] : substrate;
   const face = top && attempt("/sample/face", () => faceWorkFunction(top, sample.face));
-  const light = attempt("/light", () => lightLines(scenario.light));
+  const light = attempt("/light", () => lightGroups(scenario.light, tables));
   if (substrate && sample.valenceMaximumBelowFermiEv !== null && !substrate.valenceMaximumBelowFermiEv) {
     problems.push({
       place: "/sample/valenceMaximumBelowFermiEv",
@@ -186,11 +188,18 @@ export function resolveScenario(scenario: Scenario, tables: UserTables = {}): Re
   const materials = [...films, substrate].flatMap((chosen) => chosen ?? []);
   const thicknesses = [...sample.layers.map((layer) => layer.thicknessNm), Infinity];
   const absorbed = light && materials.length === thicknesses.length
-    ? light.lines.map((line) =>
-      attempt("/light", () => absorbedLine(line, materials, thicknesses, geometry.incidenceAngleDeg))
+    ? light.groups.map((group) =>
+      attempt("/light", () =>
+        absorbedLine(group, materials, thicknesses, {
+          incidenceAngleDeg: geometry.incidenceAngleDeg,
+          polarization: scenario.light.polarization,
+        }))
     )
     : [];
-  const highest = Math.max(...(light?.lines ?? []).map((line) => line.energyEv + 2 * line.fwhmEv), 0);
+  const highest = (light?.groups ?? []).flatMap((group) => group.photons).reduce(
+    (high, photon) => Math.max(high, photon.energyEv),
+    0,
+  );
   if (highest / scenario.simulation.energyStepEv > MOST_BINS) {
     problems.push({
       place: "/simulation/energyStepEv",
@@ -206,7 +215,7 @@ export function resolveScenario(scenario: Scenario, tables: UserTables = {}): Re
   if (problems.length > 0 || !top || !substrate || !face || !light) throw new InputError(problems);
   // A weak line beyond the optical tables is left out with a warning; the main line must be inside.
   const lines = absorbed.flatMap((line) => (line === null || line === undefined ? [] : [line]));
-  const omitted = light.lines.filter((line) => !lines.some((known) => known.name === line.name));
+  const omitted = light.groups.filter((line) => !lines.some((known) => known.name === line.name));
 
   const { charging } = sample;
   const ownResolutionEv = analyzer.resolution.kind === "fwhm"
@@ -267,7 +276,8 @@ export function resolveScenario(scenario: Scenario, tables: UserTables = {}): Re
     barrier: sample.barrier,
     lines,
     photonEnergyEv: lines[0].energyEv,
-    absorbedPhotonsPerS: light.photonFluxPerS * lines.reduce((sum, line) => sum + line.absorbedWeight, 0),
+    absorbedPhotonsPerS: scenario.light.photonFluxPerS *
+      lines.reduce((sum, line) => sum + line.absorbedWeight, 0),
     acceptanceHalfAngleDeg: analyzer.acceptanceHalfAngleDeg,
     emissionAngleDeg: geometry.emissionAngleDeg,
     analyzerWorkFunctionEv: analyzer.workFunctionEv,
@@ -288,7 +298,7 @@ export function resolveScenario(scenario: Scenario, tables: UserTables = {}): Re
       line.energyEv.toFixed(2)
     } eV is left out: the optical constants end before it`,
   }));
-  return { ...resolved, warnings: [...left, ...foresee(resolved)] };
+  return { ...resolved, warnings: [...light.warnings, ...left, ...foresee(resolved)] };
 }
 
 const USER_TABLES = [
@@ -296,50 +306,43 @@ const USER_TABLES = [
   ["meanFreePathFile", "meanFreePath"],
 ] as const;
 
-/**
- * Where a line is absorbed: Beer-Lambert in each layer with the angle that Snell's law gives there, what enters by the
- * Fresnel reflectance of the uppermost material. Null for a weak line beyond an optical table.
- */
+/** Where a line is absorbed; null for a weak line beyond an optical table. */
 function absorbedLine(
-  line: LightLine,
+  group: LightGroup,
   materials: readonly Material[],
   thicknessesNm: readonly number[],
-  incidenceAngleDeg: number,
+  light: { readonly incidenceAngleDeg: number; readonly polarization: Polarization },
 ): ResolvedLine | null {
-  if (line.energyEv > HIGHEST_PHOTON_EV) {
-    if (!line.main) return null;
+  const { name, energyEv, photons } = group;
+  if (energyEv > HIGHEST_PHOTON_EV) {
+    if (!group.needed) return null;
     throw new RangeError(
-      cannot("simulate light", `photon energies must be <= ${HIGHEST_PHOTON_EV} eV`, `${line.energyEv} eV`),
+      cannot("simulate light", `photon energies must be <= ${HIGHEST_PHOTON_EV} eV`, `${energyEv} eV`),
     );
   }
-  const inside = materials.map((chosen) => {
+  const indices = materials.map((chosen) => {
     try {
-      return absorption(
-        opticalConstantsAt(chosen, line.energyEv),
-        HC_EV_NM / line.energyEv,
-        incidenceAngleDeg,
-      );
+      return opticalConstantsAt(chosen, energyEv);
     } catch (error) {
-      if (error instanceof RangeError && !line.main) return null;
+      if (error instanceof RangeError && !group.needed) return null;
       throw error;
     }
+  }).flatMap((index) => index ?? []);
+  if (indices.length < materials.length) return null;
+  const films = indices.slice(0, -1).map((index, i) => ({ index, thicknessNm: thicknessesNm[i] }));
+  const { absorbedFractions, meanDepthsNm } = layeredAbsorption(films, indices[indices.length - 1], {
+    wavelengthNm: HC_EV_NM / energyEv,
+    ...light,
   });
-  if (inside.some((layer) => layer === null)) return null;
-  let entering = 1;
-  const shares = inside.map((layer, i) => {
-    const share = entering * -Math.expm1(-thicknessesNm[i] / layer!.meanDepthNm);
-    entering -= share;
-    return share;
-  });
-  const total = shares.reduce((sum, share) => sum + share, 0);
+  const total = absorbedFractions.reduce((sum, share) => sum + share, 0);
   return {
-    name: line.name,
-    energyEv: line.energyEv,
-    fwhmEv: line.fwhmEv,
-    absorbedWeight: line.weight * (1 - inside[0]!.reflectedFraction) * total,
-    absorbed: inside.map((layer, i) => ({
-      share: total > 0 ? shares[i] / total : 0,
-      depthNm: layer!.meanDepthNm,
+    name,
+    energyEv,
+    photons,
+    absorbedWeight: group.weight * total,
+    absorbed: absorbedFractions.map((share, i) => ({
+      share: total > 0 ? share / total : 0,
+      depthNm: meanDepthsNm[i],
     })),
   };
 }

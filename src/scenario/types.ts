@@ -90,28 +90,61 @@ export interface SampleSettings {
   readonly charging: ChargingSettings;
 }
 
+/** What every source has. */
+export interface LightCommon {
+  /** Photons per second on the analyzed spot, all energies, > 0. Default: 1e10. */
+  readonly photonFluxPerS: number;
+  /** Electric field perpendicular (`s`) or parallel (`p`) to the plane of incidence, or unpolarized. Default: `none`. */
+  readonly polarization: "none" | "s" | "p";
+}
+
 /** The light that reaches the analyzed spot. */
 export type LightSettings =
-  | {
-    /** A discharge lamp. */
-    readonly kind: "lamp";
-    /** Lamp by its built-in name, such as `He I`. */
-    readonly lamp: string;
-    /** `true` keeps the lamp's weaker lines, `false` only the strongest one. Default: true. */
-    readonly satellites: boolean;
-    /** Photons per second on the analyzed spot, > 0. Default: 1e10. */
-    readonly photonFluxPerS: number;
-  }
-  | {
-    /** A monochromator band. */
-    readonly kind: "band";
-    /** Mean photon energy, eV, 1..60. */
-    readonly centerEv: number;
-    /** Full width at half maximum of the Gaussian band, eV, 0..5. Default: 0 eV. */
-    readonly fwhmEv: number;
-    /** Photons per second on the analyzed spot, > 0. Default: 1e10. */
-    readonly photonFluxPerS: number;
-  };
+  & LightCommon
+  & (
+    | {
+      /** A discharge lamp. */
+      readonly kind: "lamp";
+      /** Lamp by its built-in name, such as `He I`. */
+      readonly lamp: string;
+      /** `true` keeps the lamp's weaker lines, `false` only the strongest one. Default: true. */
+      readonly satellites: boolean;
+    }
+    | {
+      /** A monochromator band. */
+      readonly kind: "band";
+      /** Mean photon energy, eV, 1..60. */
+      readonly centerEv: number;
+      /** Full width at half maximum of the Gaussian band, eV, 0..5. Default: 0 eV. */
+      readonly fwhmEv: number;
+    }
+    | {
+      /** A measured spectrum of the source. */
+      readonly kind: "table";
+      /** CSV file with columns `energy_ev,photons_per_ev`, beside the scenario. */
+      readonly file: string;
+    }
+    | {
+      /** A hot filament behind a filter: Planck's photon spectrum inside a window. */
+      readonly kind: "thermal";
+      /** Temperature of the filament, K, 500..6000. */
+      readonly temperatureK: number;
+      /** Lower end of the filter's window, eV. */
+      readonly lowEv: number;
+      /** Upper end, eV. */
+      readonly highEv: number;
+    }
+    | {
+      /** Single-photon emission by a pulsed laser. */
+      readonly kind: "laser";
+      /** Photon energy, eV, 1..12. */
+      readonly photonEnergyEv: number;
+      /** Full width at half maximum of its band, eV, 0..1. Default: 0.002 eV. */
+      readonly bandwidthEv: number;
+      /** Pulses per second, 1..1e10. Default: 1e6. */
+      readonly repetitionHz: number;
+    }
+  );
 
 /** Directions. */
 export interface GeometrySettings {

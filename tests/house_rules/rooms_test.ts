@@ -16,7 +16,7 @@ const MAY_IMPORT: Readonly<Record<string, readonly string[]>> = {
   fit: ["math"],
   edges: ["data", "fit", "spectrum"],
   formats: [],
-  scenario: ["data", "instrument", "sample"],
+  scenario: ["data", "instrument", "light", "sample"],
   model: ["math", "rng", "sample", "transport", "instrument", "scenario"],
   run: ["model", "transport"],
   report: [],
