@@ -64,6 +64,8 @@ export interface SimulationResult {
     readonly analogue: number;
     readonly analogueStandardError: number;
   };
+  /** Core levels in reach; empty in the ultraviolet. */
+  readonly levels: readonly Omit<ExpectedSpectrum["levels"][number], "emissionDepth">[];
   /** Highest expected counts of a channel, and the largest relative standard error among channels above 10 % of it. */
   readonly peakCounts: number;
   readonly worstRelativeStandardError: number;
@@ -133,8 +135,6 @@ function summary(
   tally: Tally,
   complete: boolean,
 ): SimulationResult {
-  const analogue = tally.groups.reduce((sum, group) => sum + group.analogue.reduce((a, b) => a + b, 0), 0);
-  const histories = Math.max(1, tally.histories);
   const peak = expected.counts.reduce((a, b) => Math.max(a, b), 0);
   const relativeErrors = expected.standardErrors.map((error, c) =>
     expected.counts[c] > 0.1 * peak ? error / expected.counts[c] : 0
@@ -156,9 +156,10 @@ function summary(
     },
     electronsPerPhoton: {
       forced: expected.electronsPerPhoton,
-      analogue: analogue / histories,
-      analogueStandardError: Math.sqrt(analogue) / histories,
+      analogue: expected.analoguePerPhoton.value,
+      analogueStandardError: expected.analoguePerPhoton.standardError,
     },
+    levels: expected.levels.map(({ emissionDepth: _, ...level }) => level),
     peakCounts: peak,
     worstRelativeStandardError: relativeErrors.reduce((a, b) => Math.max(a, b), 0),
     warnings: resolved.warnings,

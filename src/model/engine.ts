@@ -1,10 +1,12 @@
 import { interpolateLinear } from "../math/mod.ts";
 import { densityOfStates } from "../sample/mod.ts";
-import type { ResolvedLayer, ResolvedLine, ResolvedScenario } from "../scenario/mod.ts";
+import type { ResolvedFast, ResolvedLayer, ResolvedLine, ResolvedScenario } from "../scenario/mod.ts";
 import { accelerationEv } from "../instrument/mod.ts";
 import {
   DEPTH_CELLS_PER_PATH,
   detectionTable,
+  type DirectLine,
+  directLines,
   directYield,
   type EnergyGrid,
   energyGrid,
@@ -13,6 +15,9 @@ import {
   historyRunner,
   type LayerStack,
   layerStack,
+  lossHistoryRunner,
+  lossLayout,
+  type LossMedium,
   pairTables,
   type PhotonSource,
   photonSource,
@@ -27,7 +32,14 @@ const DEEPEST_PATHS = 16;
 const BENDING_SLABS = 16;
 
 /** Everything the histories need, as plain data that can be sent to a worker. */
-export interface EngineData {
+export type EngineData = PairEngineData | FastEngineData;
+
+/** Slow electrons: pair kernel. */
+export interface PairEngineData {
+  /** Which kernel. */
+  readonly kind: "pair";
+  /** Entries of the tally. */
+  readonly tallySize: number;
   /** First event; null when no photon can lift an electron above the Fermi level. */
   readonly source: PhotonSource | null;
   /** Scattering, layer by layer. */
@@ -38,10 +50,16 @@ export interface EngineData {
   readonly direct: Float64Array;
 }
 
-/** An engine ready to run batches. */
-export interface Engine extends EngineData {
-  /** Runs one batch; null when there is nothing to run. */
-  readonly run: Histories | null;
+/** Fast electrons: loss kernel. */
+export interface FastEngineData {
+  /** Which kernel. */
+  readonly kind: "loss";
+  /** Entries of the tally. */
+  readonly tallySize: number;
+  /** Layers, lines and detection. */
+  readonly medium: LossMedium;
+  /** What of each line needs no histories. */
+  readonly direct: readonly DirectLine[];
 }
 
 /**
@@ -51,6 +69,10 @@ export interface Engine extends EngineData {
  * @returns Plain data.
  */
 export function engineData(resolved: ResolvedScenario): EngineData {
+  return resolved.fast === null ? pairEngine(resolved) : fastEngine(resolved, resolved.fast);
+}
+
+function pairEngine(resolved: ResolvedScenario): PairEngineData {
   const { thermalEnergyEv, layers } = resolved;
   const grid = energyGrid(resolved.energyStepEv, {
     photonEnergyEv: Math.max(
@@ -102,20 +124,61 @@ export function engineData(resolved: ResolvedScenario): EngineData {
     ),
   );
   const direct = source === null ? new Float64Array(grid.count) : directYield(source, stack, surface);
-  return { source, stack, surface, direct };
+  return { kind: "pair", tallySize: grid.count, source, stack, surface, direct };
+}
+
+function fastEngine(resolved: ResolvedScenario, fast: ResolvedFast): FastEngineData {
+  const [top] = resolved.layers;
+  const rows = fast.layers[0].inelasticMeanFreePathNm.length;
+  const { workFunctionEv } = resolved;
+  const medium: LossMedium = {
+    layers: fast.layers.map((layer) => ({
+      ...layer,
+      inelasticMeanFreePathNm: Float64Array.from(layer.inelasticMeanFreePathNm),
+      losses: Float64Array.from(layer.losses),
+    })),
+    sources: fast.levels.map((level) => ({
+      layer: level.layer,
+      energyEv: fast.photonEnergyEv - level.bindingEnergyEv,
+      perNm: level.perNm,
+      directWeight: level.directWeight,
+    })),
+    detection: detectionTable({
+      grid: {
+        stepEv: fast.rowEv,
+        count: rows,
+        vacuumBin: Math.ceil(workFunctionEv / fast.rowEv),
+        thermalBins: 0,
+      },
+      workFunctionEv,
+      bandBottomBelowFermiEv: top.bandBottomBelowFermiEv,
+      barrier: resolved.barrier,
+      accelerationEv: accelerationEv(workFunctionEv, resolved.analyzerWorkFunctionEv, resolved.biasV),
+      acceptanceHalfAngleRad: radians(resolved.acceptanceHalfAngleDeg),
+      emissionAngleRad: radians(resolved.emissionAngleDeg),
+      cellsPerPath: DEPTH_CELLS_PER_PATH,
+      deepestPaths: DEEPEST_PATHS,
+    }),
+    stepEv: fast.stepEv,
+    maxLossEv: fast.maxLossEv,
+  };
+  return {
+    kind: "loss",
+    tallySize: lossLayout(medium).stride * medium.sources.length,
+    medium,
+    direct: directLines(medium),
+  };
 }
 
 /**
  * Makes engine data runnable, here or in a worker that received it.
  *
  * @param data From {@link engineData}.
- * @returns The engine.
+ * @returns Runs one batch; null when there is nothing to run.
  */
-export function engineFrom(data: EngineData): Engine {
-  return {
-    ...data,
-    run: data.source === null ? null : historyRunner(data.source, data.stack, data.surface),
-  };
+export function engineFrom(data: EngineData): Histories | null {
+  if (data.kind === "loss") return lossHistoryRunner(data.medium);
+  return data.source === null ? null : historyRunner(data.source, data.stack, data.surface);
 }
 
 function radians(degrees: number): number {

@@ -1,15 +1,10 @@
-import {
-  applyResponse,
-  drawCounts,
-  expectedCounts,
-  type ResponseMatrix,
-  responseMatrix,
-  windowEv,
-} from "../instrument/mod.ts";
+import { applyResponse, drawCounts, expectedCounts, responseMatrix, windowEv } from "../instrument/mod.ts";
 import { streamState, Xoshiro128pp } from "../rng/mod.ts";
 import type { ResolvedScenario } from "../scenario/mod.ts";
 import type { Tally } from "../transport/mod.ts";
-import type { EngineData } from "./engine.ts";
+import type { EngineData, PairEngineData } from "./engine.ts";
+import { type ExpectedLevel, expectedLevels, fastResponse } from "./fast.ts";
+import type { EngineResponse } from "./response.ts";
 
 /** What the instrument is expected to record, shape (channels) each. */
 export interface ExpectedSpectrum {
@@ -23,8 +18,12 @@ export interface ExpectedSpectrum {
   readonly analogueCounts: Float64Array;
   /** Standard error of `analogueCounts`. */
   readonly analogueStandardErrors: Float64Array;
-  /** Electrons per absorbed photon that reach the analyzer, all energies. */
+  /** Electrons per photon (absorbed in the ultraviolet, incident above) that reach the analyzer, all energies. */
   readonly electronsPerPhoton: number;
+  /** The same by the analogue tally, with its standard error. */
+  readonly analoguePerPhoton: { readonly value: number; readonly standardError: number };
+  /** Lines of core levels; empty in the ultraviolet. */
+  readonly levels: readonly ExpectedLevel[];
 }
 
 /**
@@ -44,44 +43,62 @@ export function expectedSpectrum(
   tally: Tally,
 ): ExpectedSpectrum {
   const { acquisition } = resolved;
-  const grid = engine.stack.grid;
   const channels = Math.floor((acquisition.endEv - acquisition.startEv) / acquisition.stepEv + 1e-6) + 1;
   const kineticEnergiesEv = Float64Array.from(
     { length: channels },
     (_, c) => acquisition.startEv + c * acquisition.stepEv,
   );
-  const response = responseMatrix(
-    kineticEnergiesEv,
-    { startEv: resolved.kineticEnergyShiftEv, stepEv: grid.stepEv, count: grid.count },
-    resolved.resolutionFwhmEv,
-  );
-  const fermiEdgeEv = resolved.photonEnergyEv + resolved.kineticEnergyShiftEv;
+  const response = engine.kind === "pair"
+    ? pairResponse(resolved, engine, kineticEnergiesEv)
+    : fastResponse(resolved, engine, kineticEnergiesEv);
+  const referenceEv = resolved.photonEnergyEv + resolved.kineticEnergyShiftEv;
   const ratePerDensity = kineticEnergiesEv.map((energyEv) => {
     if (energyEv <= 0) return 0; // the analyzer records nothing at or below zero kinetic energy
-    const transmission = (energyEv / fermiEdgeEv) ** -resolved.transmissionExponent;
-    return resolved.absorbedPhotonsPerS * resolved.detectionFraction * transmission *
+    const transmission = (energyEv / referenceEv) ** -resolved.transmissionExponent;
+    return response.photonsPerS * resolved.detectionFraction * transmission *
       windowEv(resolved.resolutionFwhmEv);
   });
-
-  const direct = applyResponse(response, engine.direct);
-  const forced = groupStatistics(tally, response, (group) => group.forced);
-  const analogue = groupStatistics(tally, response, (group) => group.analogue);
+  const forced = groupStatistics(tally, (group) => response.densityOf(group.forced));
+  const analogue = groupStatistics(tally, (group) => response.densityOf(group.analogue));
   const toCounts = (mean: (c: number) => number, error: Float64Array) =>
     expectedCounts(
       ratePerDensity.map((rate, c) => rate * mean(c)),
       ratePerDensity.map((rate, c) => rate * error[c]),
       acquisition,
     );
-  const expected = toCounts((c) => direct[c] + forced.mean[c], forced.error);
+  const expected = toCounts((c) => response.direct[c] + forced.mean[c], forced.error);
   const counted = toCounts((c) => analogue.mean[c], analogue.error);
-  const scattered = tally.groups.reduce((sum, group) => sum + total(group.forced), 0);
+  const scattered = groupStatistics(tally, (group) => response.totalOf(group.forced));
+  const seen = groupStatistics(tally, (group) => response.totalOf(group.analogue));
   return {
     kineticEnergiesEv,
     counts: expected.counts,
     standardErrors: expected.standardErrors,
     analogueCounts: counted.counts,
     analogueStandardErrors: counted.standardErrors,
-    electronsPerPhoton: total(engine.direct) + (tally.histories > 0 ? scattered / tally.histories : 0),
+    electronsPerPhoton: response.directTotal + (scattered.mean[0] ?? 0),
+    analoguePerPhoton: { value: seen.mean[0] ?? 0, standardError: seen.error[0] ?? 0 },
+    levels: engine.kind === "pair" ? [] : expectedLevels(resolved, engine, tally),
+  };
+}
+
+function pairResponse(
+  resolved: ResolvedScenario,
+  engine: PairEngineData,
+  kineticEnergiesEv: Float64Array,
+): EngineResponse {
+  const { stepEv, count } = engine.stack.grid;
+  const matrix = responseMatrix(
+    kineticEnergiesEv,
+    { startEv: resolved.kineticEnergyShiftEv, stepEv, count },
+    resolved.resolutionFwhmEv,
+  );
+  return {
+    photonsPerS: resolved.absorbedPhotonsPerS,
+    direct: applyResponse(matrix, engine.direct),
+    directTotal: total(engine.direct),
+    densityOf: (contents) => applyResponse(matrix, contents),
+    totalOf: (contents) => Float64Array.of(total(contents)),
   };
 }
 
@@ -97,24 +114,23 @@ export function countSpectrum(spectrum: ExpectedSpectrum, seed: number, replicat
   return drawCounts(spectrum.counts, new Xoshiro128pp(streamState(seed, "counting", replicate)));
 }
 
-/** Mean and standard error of a density at the channels, from the scatter between groups (equal weights by histories). */
+/** Means and standard errors from the scatter between groups (weights by histories). */
 function groupStatistics(
   tally: Tally,
-  response: ResponseMatrix,
-  pick: (group: Tally["groups"][number]) => Float64Array,
+  valuesOf: (group: Tally["groups"][number]) => Float64Array,
 ): { mean: Float64Array; error: Float64Array } {
-  const channels = response.first.length;
-  const mean = new Float64Array(channels);
-  const squares = new Float64Array(channels);
+  let mean = new Float64Array(0);
+  let squares = new Float64Array(0);
   let weight = 0;
   let groups = 0;
   for (const group of tally.groups) {
-    const density = applyResponse(response, pick(group));
+    const values = valuesOf(group);
+    if (groups === 0) [mean, squares] = [new Float64Array(values.length), new Float64Array(values.length)];
     weight += group.histories;
     groups++;
-    for (let c = 0; c < channels; c++) {
+    for (let c = 0; c < values.length; c++) {
       // Weighted running mean and sum of squares: D. West, Commun. ACM 22, 532 (1979).
-      const delta = density[c] / group.histories - mean[c];
+      const delta = values[c] / group.histories - mean[c];
       const share = (delta * group.histories) / weight;
       mean[c] += share;
       squares[c] += (weight - group.histories) * delta * share;

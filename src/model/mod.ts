@@ -4,5 +4,12 @@
  *
  * @module
  */
-export { type Engine, type EngineData, engineData, engineFrom } from "./engine.ts";
+export {
+  type EngineData,
+  engineData,
+  engineFrom,
+  type FastEngineData,
+  type PairEngineData,
+} from "./engine.ts";
 export { countSpectrum, type ExpectedSpectrum, expectedSpectrum } from "./expected.ts";
+export type { ExpectedLevel } from "./fast.ts";

@@ -41,12 +41,12 @@ export function batchesFor(histories: number): number {
  * @returns The tally, identical to that of {@link runHistories}.
  */
 export function runSeries(data: EngineData, seed: number, batches: number): Tally {
-  const engine = engineFrom(data);
-  const count = data.stack.grid.count;
+  const run = engineFrom(data);
+  const count = data.tallySize;
   const sums = new TallyAccumulator(count);
   for (let batch = 0; batch < batches; batch++) {
     const tally = emptyBatchTally(count);
-    engine.run?.(seed, batch, tally);
+    run?.(seed, batch, tally);
     sums.add(batch, tally);
   }
   return sums.result();
@@ -68,8 +68,8 @@ export async function runHistories(
   batches: number,
   options: RunOptions,
 ): Promise<Tally> {
-  const sums = new TallyAccumulator(data.stack.grid.count);
-  if (data.source === null) return runSeries(data, seed, batches);
+  const sums = new TallyAccumulator(data.tallySize);
+  if (isIdle(data)) return runSeries(data, seed, batches);
   const stop = new Int32Array(new SharedArrayBuffer(4));
   const requestStop = (): void => {
     Atomics.store(stop, 0, 1);
@@ -105,6 +105,11 @@ export async function runHistories(
     await Promise.all(workers.map((worker) => worker.terminate()));
   }
   return sums.result();
+}
+
+/** Nothing to run: no photon lifts an electron above the Fermi level. */
+function isIdle(data: EngineData): boolean {
+  return data.kind === "pair" && data.source === null;
 }
 
 /** The worker beside this file, under the extension this file itself has (`.ts` here, `.js` once packed for npm). */

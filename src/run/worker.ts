@@ -4,8 +4,8 @@
  * @module
  */
 import { parentPort } from "node:worker_threads";
-import { type Engine, type EngineData, engineFrom } from "../model/mod.ts";
-import { type BatchTally, emptyBatchTally } from "../transport/mod.ts";
+import { type EngineData, engineFrom } from "../model/mod.ts";
+import { type BatchTally, emptyBatchTally, type Histories } from "../transport/mod.ts";
 
 /** What a worker is told. */
 export type ToWorker =
@@ -18,7 +18,8 @@ export type FromWorker =
   | { readonly kind: "batch"; readonly batch: number; readonly tally: BatchTally }
   | { readonly kind: "failed"; readonly message: string };
 
-let engine: Engine | undefined;
+let run: Histories | null = null;
+let tallySize = 0;
 let seed = 0;
 let stop: Int32Array | undefined;
 
@@ -29,13 +30,14 @@ function post(message: FromWorker, transfer: ArrayBuffer[] = []): void {
 parentPort?.on("message", (message: ToWorker) => {
   try {
     if (message.kind === "setup") {
-      engine = engineFrom(message.data);
+      run = engineFrom(message.data);
+      tallySize = message.data.tallySize;
       seed = message.seed;
       stop = message.stop;
-    } else if (engine?.run && stop) {
+    } else if (run && stop) {
       for (let batch = message.from; batch < message.to && Atomics.load(stop, 0) === 0; batch++) {
-        const tally = emptyBatchTally(engine.stack.grid.count);
-        engine.run(seed, batch, tally);
+        const tally = emptyBatchTally(tallySize);
+        run(seed, batch, tally);
         const buffers = Object.values(tally).map((array: Float64Array) => array.buffer as ArrayBuffer);
         post({ kind: "batch", batch, tally }, buffers);
       }

@@ -39,6 +39,16 @@ export function foresee(r: Omit<ResolvedScenario, "warnings">): Notice[] {
       );
     }
   }
+  if (stepEv > 0.6 * r.resolutionFwhmEv) {
+    warn(
+      "step-coarse",
+      "/acquisition/stepEv",
+      `the step ${show(stepEv)} is coarse for a resolution of ${
+        show(r.resolutionFwhmEv)
+      }: take at most half of it`,
+    );
+  }
+  if (r.fast !== null) return warnings; // the edges below are those of an ultraviolet spectrum
   if (r.photonEnergyEv <= lowest) {
     warn(
       "below-threshold",
@@ -70,15 +80,6 @@ export function foresee(r: Omit<ResolvedScenario, "warnings">): Notice[] {
       `the window ends at ${show(endEv)}, before the Fermi edge at ${show(fermiEv)} is over`,
     );
   }
-  if (stepEv > 0.6 * r.resolutionFwhmEv) {
-    warn(
-      "step-coarse",
-      "/acquisition/stepEv",
-      `the step ${show(stepEv)} is coarse for a resolution of ${
-        show(r.resolutionFwhmEv)
-      }: take at most half of it`,
-    );
-  }
   if (r.biasV > 0) {
     warn(
       "bias-retards",
@@ -107,7 +108,10 @@ export function foresee(r: Omit<ResolvedScenario, "warnings">): Notice[] {
     );
   }
   const [uppermost] = r.layers;
-  if (uppermost.states.kind === "model" && uppermost.states.model.gap === null && r.lines.length > 1) {
+  if (
+    uppermost.states.kind === "model" && uppermost.states.model.gap === null && r.lines.length > 1 &&
+    r.lines.every((line) => line.photons.length === 1)
+  ) {
     const states = densityOfStates(uppermost.states.model);
     for (const line of r.lines.slice(1)) {
       const shift = line.energyEv - r.photonEnergyEv;

@@ -1,4 +1,12 @@
-import { bandLight, lampLight, type LightPoint, tabulatedLight, thermalLight } from "../light/mod.ts";
+import {
+  anodeLight,
+  bandLight,
+  lampLight,
+  type LightPoint,
+  monochromatedAluminumLight,
+  tabulatedLight,
+  thermalLight,
+} from "../light/mod.ts";
 import { cannot, InputError, type Notice } from "../base/mod.ts";
 import type { UserTables } from "./resolve.ts";
 import type { LightSettings } from "./types.ts";
@@ -46,6 +54,9 @@ export function lightGroups(
         groups: lampLight(light.lamp, light.satellites).map((point, i) => line(point, i === 0)),
         warnings: [],
       };
+    case "anode":
+    case "monochromatedAluminum":
+      return { groups: fastLight(light).map((point, i) => line(point, i === 0)), warnings: [] };
     case "band":
       return {
         groups: bandLight(light.centerEv, light.fwhmEv).map((point) => line(point, true)),
@@ -80,6 +91,25 @@ export function lightGroups(
       const window = { lowEv: light.lowEv, highEv: light.highEv, stepEv: THERMAL_STEP_EV };
       return { groups: stretches(thermalLight(light.temperatureK, window)), warnings: [] };
     }
+  }
+}
+
+/**
+ * Lines of a source for fast electrons, with their natural widths.
+ *
+ * @param light Settings.
+ * @returns The lines; empty for sources that have no line profile of their own.
+ */
+export function fastLight(light: LightSettings): readonly LightPoint[] {
+  switch (light.kind) {
+    case "anode":
+      return anodeLight(light.anode, light.satellites);
+    case "monochromatedAluminum":
+      return monochromatedAluminumLight(light.fwhmEv);
+    case "band":
+      return bandLight(light.centerEv, light.fwhmEv);
+    default:
+      return [];
   }
 }
 

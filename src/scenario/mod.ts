@@ -29,4 +29,5 @@ export {
   type UserTable,
   type UserTables,
 } from "./resolve.ts";
+export type { ResolvedFast, ResolvedFastLayer, ResolvedLevel } from "./fast.ts";
 export { scenarioHash } from "./hash.ts";

@@ -45,6 +45,7 @@ const sample = z.strictObject({
     widthNm: z.number().min(0.1).max(10_000),
   }).nullable().default(null),
   charging: charging.default(() => charging.parse({})),
+  fastMeanFreePath: z.enum(["TPP-2M", "Seah-Dench"]).default("TPP-2M"),
 });
 
 const common = {
@@ -60,8 +61,19 @@ const light = z.discriminatedUnion("kind", [
     ...common,
   }),
   z.strictObject({
+    kind: z.literal("anode"),
+    anode: z.enum(["Mg", "Al"]),
+    satellites: z.boolean().default(true),
+    ...common,
+  }),
+  z.strictObject({
+    kind: z.literal("monochromatedAluminum"),
+    fwhmEv: energy(0.05, 0.9).default(0.25),
+    ...common,
+  }),
+  z.strictObject({
     kind: z.literal("band"),
-    centerEv: energy(1, 60),
+    centerEv: energy(1, 3000),
     fwhmEv: energy(0, 5).default(0),
     ...common,
   }),
@@ -107,8 +119,8 @@ const analyzer = z.strictObject({
 });
 
 const acquisition = z.strictObject({
-  startEv: energy(-20, 200),
-  endEv: energy(-20, 200),
+  startEv: energy(-20, 3000),
+  endEv: energy(-20, 3000),
   stepEv: energy(0.0001, 5),
   dwellS: z.number().positive().max(1e6),
   sweeps: z.int().min(1).max(1e6).default(1),
@@ -120,6 +132,7 @@ const simulation = z.strictObject({
   histories: z.int().min(8192).max(1e12).default(20_000_000),
   seed: z.int().min(0).default(1),
   energyStepEv: energy(0.002, 0.1).default(0.02),
+  maxLossEv: energy(5, 500).default(100),
 });
 
 const scenario = z.strictObject({

@@ -1,7 +1,8 @@
 import { cannot, InputError, type Notice, type Problem, suggest } from "../base/mod.ts";
 import { BOLTZMANN_EV_PER_K, HC_EV_NM, type Material, material, opticalConstantsAt } from "../data/mod.ts";
-import { accelerationEv, hemisphereResolutionEv, kineticEnergyShiftEv } from "../instrument/mod.ts";
+import { hemisphereResolutionEv, kineticEnergyShiftEv } from "../instrument/mod.ts";
 import { type BandModel, layeredAbsorption, type Polarization } from "../sample/mod.ts";
+import { type ResolvedFast, resolveFast } from "./fast.ts";
 import { foresee } from "./foresee.ts";
 import { type LightGroup, lightGroups } from "./light.ts";
 import { surfaceParts } from "./surface.ts";
@@ -98,8 +99,10 @@ export interface ResolvedScenario {
   readonly gapEv: number;
   /** Surface barrier. */
   readonly barrier: "classical" | "quantum";
-  /** Photon energies, the main one first. */
+  /** Photon energies, the main one first; empty above the ultraviolet. */
   readonly lines: readonly ResolvedLine[];
+  /** Core levels and losses of fast electrons; null in the ultraviolet. */
+  readonly fast: ResolvedFast | null;
   /** Photon energy of the main line, eV. */
   readonly photonEnergyEv: number;
   /** Photons absorbed per second, all lines. */
@@ -132,8 +135,8 @@ export interface ResolvedScenario {
   readonly warnings: readonly Notice[];
 }
 
-/** The pair kernel leaves out core levels and plasmons, so photon energies end here, eV. */
-const HIGHEST_PHOTON_EV = 60;
+/** The pair kernel leaves out core levels and plasmons: above this photon energy the loss kernel takes over, eV. */
+const HIGHEST_PAIR_EV = 60;
 /** No surface is known below this, and the grid needs a vacuum level above the Fermi level, eV. */
 const LEAST_WORK_FUNCTION_EV = 0.3;
 /** Bins of the transport grid; the tables grow with the square. */
@@ -187,7 +190,12 @@ export function resolveScenario(scenario: Scenario, tables: UserTables = {}): Re
   }
   const materials = [...films, substrate].flatMap((chosen) => chosen ?? []);
   const thicknesses = [...sample.layers.map((layer) => layer.thicknessNm), Infinity];
-  const absorbed = light && materials.length === thicknesses.length
+  const highest = (light?.groups ?? []).flatMap((group) => group.photons).reduce(
+    (high, photon) => Math.max(high, photon.energyEv),
+    0,
+  );
+  const isFast = highest > HIGHEST_PAIR_EV;
+  const absorbed = light && !isFast && materials.length === thicknesses.length
     ? light.groups.map((group) =>
       attempt("/light", () =>
         absorbedLine(group, materials, thicknesses, {
@@ -196,11 +204,7 @@ export function resolveScenario(scenario: Scenario, tables: UserTables = {}): Re
         }))
     )
     : [];
-  const highest = (light?.groups ?? []).flatMap((group) => group.photons).reduce(
-    (high, photon) => Math.max(high, photon.energyEv),
-    0,
-  );
-  if (highest / scenario.simulation.energyStepEv > MOST_BINS) {
+  if (!isFast && highest / scenario.simulation.energyStepEv > MOST_BINS) {
     problems.push({
       place: "/simulation/energyStepEv",
       message: cannot(
@@ -215,7 +219,9 @@ export function resolveScenario(scenario: Scenario, tables: UserTables = {}): Re
   if (problems.length > 0 || !top || !substrate || !face || !light) throw new InputError(problems);
   // A weak line beyond the optical tables is left out with a warning; the main line must be inside.
   const lines = absorbed.flatMap((line) => (line === null || line === undefined ? [] : [line]));
-  const omitted = light.groups.filter((line) => !lines.some((known) => known.name === line.name));
+  const omitted = isFast
+    ? []
+    : light.groups.filter((line) => !lines.some((known) => known.name === line.name));
 
   const { charging } = sample;
   const ownResolutionEv = analyzer.resolution.kind === "fwhm"
@@ -227,6 +233,8 @@ export function resolveScenario(scenario: Scenario, tables: UserTables = {}): Re
       (analyzer.resolution.slitHalfAngleDeg * Math.PI) / 180,
     );
   const resolutionFwhmEv = Math.hypot(ownResolutionEv, charging.fwhmEv);
+  const shiftEv = kineticEnergyShiftEv(analyzer.workFunctionEv, biasV) - charging.shiftEv;
+  const fast = isFast ? resolveFast(scenario, materials, tables, resolutionFwhmEv, shiftEv) : null;
   const surface = surfaceParts(sample.surface, sample.workFunctionEv ?? face.value, resolutionFwhmEv);
   const lowest = Math.min(...surface.parts.map((part) => part.workFunctionEv));
   if (!(lowest >= LEAST_WORK_FUNCTION_EV)) {
@@ -275,14 +283,15 @@ export function resolveScenario(scenario: Scenario, tables: UserTables = {}): Re
     gapEv: substrate.bulk.gapEv.value,
     barrier: sample.barrier,
     lines,
-    photonEnergyEv: lines[0].energyEv,
+    fast: fast?.fast ?? null,
+    photonEnergyEv: fast?.fast.photonEnergyEv ?? lines[0].energyEv,
     absorbedPhotonsPerS: scenario.light.photonFluxPerS *
       lines.reduce((sum, line) => sum + line.absorbedWeight, 0),
     acceptanceHalfAngleDeg: analyzer.acceptanceHalfAngleDeg,
     emissionAngleDeg: geometry.emissionAngleDeg,
     analyzerWorkFunctionEv: analyzer.workFunctionEv,
     biasV,
-    kineticEnergyShiftEv: kineticEnergyShiftEv(analyzer.workFunctionEv, biasV) - charging.shiftEv,
+    kineticEnergyShiftEv: shiftEv,
     resolutionFwhmEv,
     transmissionExponent: analyzer.transmissionExponent,
     detectionFraction: analyzer.detectionFraction,
@@ -298,7 +307,10 @@ export function resolveScenario(scenario: Scenario, tables: UserTables = {}): Re
       line.energyEv.toFixed(2)
     } eV is left out: the optical constants end before it`,
   }));
-  return { ...resolved, warnings: [...light.warnings, ...left, ...foresee(resolved)] };
+  return {
+    ...resolved,
+    warnings: [...light.warnings, ...left, ...(fast?.warnings ?? []), ...foresee(resolved)],
+  };
 }
 
 const USER_TABLES = [
@@ -314,12 +326,6 @@ function absorbedLine(
   light: { readonly incidenceAngleDeg: number; readonly polarization: Polarization },
 ): ResolvedLine | null {
   const { name, energyEv, photons } = group;
-  if (energyEv > HIGHEST_PHOTON_EV) {
-    if (!group.needed) return null;
-    throw new RangeError(
-      cannot("simulate light", `photon energies must be <= ${HIGHEST_PHOTON_EV} eV`, `${energyEv} eV`),
-    );
-  }
   const indices = materials.map((chosen) => {
     try {
       return opticalConstantsAt(chosen, energyEv);

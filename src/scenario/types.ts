@@ -88,6 +88,11 @@ export interface SampleSettings {
   readonly bandBending: BandBendingSettings | null;
   /** Charging. */
   readonly charging: ChargingSettings;
+  /**
+   * Law of the inelastic mean free path of fast electrons (photon energies above 60 eV); a `meanFreePathFile` replaces
+   * it in the substrate. Default: `TPP-2M`.
+   */
+  readonly fastMeanFreePath: "TPP-2M" | "Seah-Dench";
 }
 
 /** What every source has. */
@@ -111,9 +116,23 @@ export type LightSettings =
       readonly satellites: boolean;
     }
     | {
+      /** An X-ray anode without monochromator. */
+      readonly kind: "anode";
+      /** `Mg` or `Al`. */
+      readonly anode: "Mg" | "Al";
+      /** `true` keeps the K-alpha 3, 4 and weaker satellites. Default: true. */
+      readonly satellites: boolean;
+    }
+    | {
+      /** The monochromated aluminum K-alpha line. */
+      readonly kind: "monochromatedAluminum";
+      /** Full width at half maximum, eV, 0.05..0.9. Default: 0.25 eV. */
+      readonly fwhmEv: number;
+    }
+    | {
       /** A monochromator band. */
       readonly kind: "band";
-      /** Mean photon energy, eV, 1..60. */
+      /** Mean photon energy, eV, 1..3000; above 60 eV core levels and losses of fast electrons are simulated. */
       readonly centerEv: number;
       /** Full width at half maximum of the Gaussian band, eV, 0..5. Default: 0 eV. */
       readonly fwhmEv: number;
@@ -200,8 +219,10 @@ export interface SimulationSettings {
   readonly histories: number;
   /** Seed of all random numbers, a whole number 0..2^53 - 1. Default: 1. */
   readonly seed: number;
-  /** Step of the energy grid of the transport, eV, 0.002..0.1. Default: 0.02 eV. */
+  /** Widest step of the energy grid of the transport, eV, 0.002..0.1. Default: 0.02 eV. */
   readonly energyStepEv: number;
+  /** Largest loss that is followed above 60 eV photon energy, eV, 5..500. Default: 100 eV. */
+  readonly maxLossEv: number;
 }
 
 /** A simulation as the user writes it, with all defaults filled in. */

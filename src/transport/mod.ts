@@ -3,7 +3,7 @@
  *
  * `pair_tables.ts` holds the physics of electron-electron scattering as sampling tables, `excitation.ts` the first
  * step (where and at which energy photoelectrons start), `stack.ts` several layers as one, `detection.ts` the last step (probability of reaching the
- * analyzer), `kernel.ts` the histories, `tally.ts` the sums and their standard errors.
+ * analyzer), `kernel.ts` the histories of slow electrons, `loss_kernel.ts` those of fast ones, `tally.ts` the sums and their standard errors.
  *
  * @module
  */
@@ -31,4 +31,14 @@ export {
   type SurfacePart,
 } from "./kernel.ts";
 export { type Layer, type LayerStack, layerStack } from "./stack.ts";
+export {
+  type DirectLine,
+  directLines,
+  lossHistoryRunner,
+  type LossLayer,
+  type LossLayout,
+  lossLayout,
+  type LossMedium,
+  type LossSource,
+} from "./loss_kernel.ts";
 export { type Tally, TallyAccumulator } from "./tally.ts";
