@@ -133,6 +133,12 @@ export function resolveScenario(scenario: Scenario, tables: UserTables = {}): Re
   const { sample, light, geometry, analyzer, biasV } = scenario;
   const chosen = attempt("/sample/material", () => material(sample.material));
   const faceSource = chosen && attempt("/sample/face", () => faceWorkFunction(chosen, sample.face));
+  if (chosen && chosen.valenceMaximumBelowFermiEv !== null && sample.densityOfStatesFile === null) {
+    problems.push({
+      place: "/sample/material",
+      message: cannot("simulate", "a material with a gap must have a densityOfStatesFile", sample.material),
+    });
+  }
   const lines = light.kind === "lamp"
     ? attempt("/light/lamp", () => lampLines(light.lamp).slice(0, light.satellites ? undefined : 1))
     : [{ name: "band", energyEv: light.centerEv, relativeIntensity: 1 }];

@@ -5,3 +5,4 @@
  */
 export { broadenedFermiEdge, type FermiEdgeShape } from "./fermi_edge.ts";
 export { broadenedHinge, broadenedRampStep, broadenedTopStep } from "./steps.ts";
+export { edgeTangentShiftEv } from "./tangent_shift.ts";
