@@ -1,12 +1,18 @@
 import { buildApplication, buildRouteMap, run, text_en } from "@stricli/core";
 import { InputError, VERSION } from "../base/mod.ts";
+import { convertCommand } from "./convert_command.ts";
 import { demoCommand } from "./demo_command.ts";
 import { exitCodeOf, FileError } from "./files.ts";
 import { fitCommand } from "./fit_command.ts";
 import { type Context, GOOD, USAGE } from "./flags.ts";
+import { inspectCommand } from "./inspect_command.ts";
 import type { TerminalStream } from "./progress.ts";
+import { linesCommand } from "./lines_command.ts";
 import { materialsCommand, validateCommand } from "./scenario_commands.ts";
+import { seriesCommand } from "./series_command.ts";
 import { simulateCommand } from "./simulate_command.ts";
+import { sweepCommand } from "./sweep_command.ts";
+import { sweepCollectCommand, sweepStatusCommand } from "./sweep_folder_commands.ts";
 
 /** What a person is told of an error: the message alone for their mistakes, the stack for ours. */
 function errorText(error: unknown): string {
@@ -19,9 +25,16 @@ const application = buildApplication<Context>(
     routes: {
       simulate: simulateCommand,
       fit: fitCommand,
+      convert: convertCommand,
+      inspect: inspectCommand,
+      series: seriesCommand,
+      lines: linesCommand,
       validate: validateCommand,
       materials: materialsCommand,
       demo: demoCommand,
+      sweep: sweepCommand,
+      sweepStatus: sweepStatusCommand,
+      sweepCollect: sweepCollectCommand,
     },
     docs: { brief: "Twoedge: simulate and fit the two edges of a photoemission spectrum" },
   }),

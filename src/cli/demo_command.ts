@@ -1,6 +1,8 @@
 import { buildCommand } from "@stricli/core";
 import { writeFiles } from "./files.ts";
-import { fitFiles, fitJson, fitSvg, fitText } from "./fit.ts";
+import { fitFiles, fitJson } from "./fit.ts";
+import { fitSvg } from "./fit_figure.ts";
+import { fitText } from "./fit_text.ts";
 import { type Context, NOT_TRUSTED, outFlag, workersFlag } from "./flags.ts";
 import { runScenario, writeSimulation } from "./simulate_command.ts";
 

@@ -51,7 +51,7 @@ export async function readBytes(path: string): Promise<Uint8Array> {
  */
 export async function writeFiles(
   folder: string,
-  files: readonly (readonly [name: string, contents: string])[],
+  files: readonly (readonly [name: string, contents: string | Uint8Array])[],
 ): Promise<string[]> {
   const pairs = files.map(([name]) => [join(folder, `.${name}.partial`), join(folder, name)] as const);
   try {

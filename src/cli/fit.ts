@@ -1,4 +1,4 @@
-import { cannot, type Estimate, InputError, type Notice, VERSION } from "../base/mod.ts";
+import { cannot, InputError, VERSION } from "../base/mod.ts";
 import { nearestLine } from "../data/mod.ts";
 import {
   type EdgeRegion,
@@ -8,8 +8,7 @@ import {
   type WorkFunctionResult,
 } from "../edges/mod.ts";
 import { readSpectrumFile, type SpectrumRegion } from "../formats/mod.ts";
-import { formatEstimate, renderSvg, spectrumFigure } from "../report/mod.ts";
-import { readBytes, stem } from "./files.ts";
+import { readBytes } from "./files.ts";
 
 /** What the user states on the command line. */
 export type FitStatements = Omit<MeasureOptions, "knownLine"> & {
@@ -36,17 +35,21 @@ export async function fitFiles(paths: readonly string[], statements: FitStatemen
   const { columns, ...options } = statements;
   const regions: EdgeRegion[] = [];
   for (const path of paths) {
-    const file = readSpectrumFile(await readBytes(path), path, columns ? { columns } : {});
-    for (const region of file.regions) regions.push(edgeRegion(region, path, file.format === "csv"));
+    const file = await readSpectrumFile(await readBytes(path), path, columns ? { columns } : {});
+    for (const region of file.regions) regions.push(edgeRegion(region, path));
   }
   return { regions, result: measureWorkFunction(regions, { ...options, knownLine: nearestLine }) };
 }
 
-/** Our own CSV defines the sign of the bias and records energies as the analyzer does; other formats do not say. */
-function edgeRegion(region: SpectrumRegion, file: string, ownFormat: boolean): EdgeRegion {
+/** What a fit needs of a region, with the facts that are metadata in the file. */
+function edgeRegion(region: SpectrumRegion, file: string): EdgeRegion {
   const number = (key: string): number | null => {
     const text = region.metadata[key];
     return text === undefined || text === "" || !Number.isFinite(Number(text)) ? null : Number(text);
+  };
+  const positive = (key: string): number | null => {
+    const value = number(key);
+    return value !== null && value > 0 ? value : null;
   };
   return {
     label: region.label,
@@ -56,15 +59,18 @@ function edgeRegion(region: SpectrumRegion, file: string, ownFormat: boolean): E
     counts: poissonCounts(region, file),
     photonEnergyEv: region.photonEnergyEv,
     biasV: region.biasV,
-    asRecorded: ownFormat && region.biasV !== null,
+    asRecorded: region.asRecorded,
     analyzerWorkFunctionEv: region.analyzerWorkFunctionEv,
     acceptanceHalfAngleDeg: number("acceptance_half_angle_deg"),
     temperatureK: number("temperature_k"),
+    resolutionFwhmEv: positive("resolution_fwhm_ev"),
+    deadTimeS: positive("dead_time_s"),
+    countingTimeS: region.dwellS === null || region.sweeps === null ? null : region.dwellS * region.sweeps,
   };
 }
 
 /** Counts; a rate (ISO 14976 unit `c/s`) times the time it was collected for. */
-function poissonCounts(region: SpectrumRegion, file: string): Float64Array {
+export function poissonCounts(region: SpectrumRegion, file: string): Float64Array {
   if (region.metadata["counts units"] !== "c/s") return region.counts;
   const { dwellS, sweeps } = region;
   if (dwellS === null || sweeps === null) {
@@ -98,121 +104,16 @@ export function fitJson(result: WorkFunctionResult): Record<string, unknown> {
 
 function edgeJson(edge: FittedEdge | null): Record<string, unknown> | null {
   if (edge === null) return null;
-  const { energiesEv, fittedCounts: _, ...rest } = edge;
-  return { ...rest, windowEv: [energiesEv[0], energiesEv[energiesEv.length - 1]] };
+  const { energiesEv, fittedCounts: _fitted, counts: _counts, bootstrap, ...rest } = edge;
+  const { positionsEv, ...summary } = bootstrap ?? { positionsEv: [] };
+  return {
+    ...rest,
+    bootstrap: bootstrap === null ? null : { replicates: positionsEv.length, ...summary },
+    windowEv: [energiesEv[0], energiesEv[energiesEv.length - 1]],
+  };
 }
 
 /** A warning as one line. */
-export function noticeText(notice: Notice): string {
-  return notice.place === "" ? notice.message : `${notice.message} (at ${notice.place})`;
-}
-
-/**
- * The answer as text for a terminal.
- *
- * @param result The answer.
- * @returns Lines, at most 80 columns for the table.
- */
-export function fitText(result: WorkFunctionResult): string {
-  const row = (name: string, estimate: WorkFunctionResult["workFunctionEv"]): string[] =>
-    estimate === null ? [] : [`  ${name.padEnd(26)}${formatEstimate(estimate, "eV")}`];
-  const { inputs } = result;
-  return [
-    `Verdict: ${result.verdict}`,
-    ...result.reasons.map((reason) => `  because ${reason}`),
-    ...row("work function", result.workFunctionEv),
-    ...row("maximum kinetic energy", result.maxKineticEnergyEv),
-    ...row("ionization energy", result.ionizationEnergyEv),
-    ...row("valence-band maximum", result.valenceBandMaximumEv),
-    ...row("secondary cutoff", result.cutoffEv),
-    ...row("Fermi edge", result.fermiEdgeEv),
-    "Used:",
-    ...inputs.regions.map((use) =>
-      `  ${use.file}${use.region ? ` region ${use.region}` : ""}, ${use.rangeEv[0]} to ${
-        use.rangeEv[1]
-      } eV: ${use.use}`
-    ),
-    `  photon energy ${shortEv(inputs.photonEnergyEv.value)}, ${inputs.photonEnergyEv.from}`,
-    `  bias ${inputs.biasV.value === null ? "" : `${inputs.biasV.value} V, `}${inputs.biasV.from}`,
-    `  ${inputs.axis.kind} energy axis, ${inputs.axis.from}; temperature ${inputs.temperatureK.value} K, ${inputs.temperatureK.from}`,
-    `  Fermi level ${
-      inputs.fermiLevelEv.value === null ? "" : `at ${inputs.fermiLevelEv.value.toFixed(3)} eV, `
-    }${inputs.fermiLevelEv.from}`,
-    ...(result.budget.length === 0 ? [] : ["Uncertainty budget (k = 1):"]),
-    ...result.budget.map((term) =>
-      `  ${term.name.padEnd(36)}${(1000 * term.standardUncertaintyEv).toFixed(1).padStart(7)} meV`
-    ),
-    ...result.warnings.map((warning) => `Warning: ${noticeText(warning)}`),
-  ].join("\n");
-}
-
-/** An energy for people: at most five decimals. */
-function shortEv(energyEv: number): string {
-  return `${Number(energyEv.toFixed(5))} eV`;
-}
-
-/**
- * The figure of a fit.
- *
- * @param run The fit.
- * @param title Title of the figure.
- * @returns Text of an SVG file.
- */
-export function fitSvg({ regions, result }: FitRun, title: string): Promise<string> {
-  const onFitAxis = (region: EdgeRegion): EdgeRegion => {
-    if (result.inputs.axis.kind === "kinetic") return region;
-    const photonEnergyEv = result.inputs.photonEnergyEv.value;
-    return {
-      ...region,
-      energiesEv: region.energiesEv.map((energy) => photonEnergyEv - energy).reverse(),
-      counts: region.counts.slice().reverse(),
-    };
-  };
-  const usesOf = (region: EdgeRegion) =>
-    result.inputs.regions.filter((use) => use.file === region.file && use.region === region.label);
-  const used = regions.filter((region) => usesOf(region).length > 0).map(onFitAxis);
-  const shown = used.length > 0 ? used : regions.map(onFitAxis);
-  const edge = (name: string, purpose: RegExp, fit: FittedEdge | null, position: Estimate | null) => {
-    if (fit === null || position === null || !fit.converged) return [];
-    const first = fit.energiesEv[0];
-    const owner = used.find((region) =>
-      usesOf(region).some(({ use }) => purpose.test(use)) && region.energiesEv.includes(first)
-    );
-    if (owner === undefined) return [];
-    const from = owner.energiesEv.indexOf(first);
-    return [{
-      name,
-      positionEv: position.value,
-      standardUncertaintyEv: position.standardUncertainty,
-      data: { energiesEv: fit.energiesEv, counts: owner.counts.slice(from, from + fit.energiesEv.length) },
-      fitted: { energiesEv: fit.energiesEv, counts: fit.fittedCounts },
-    }];
-  };
-  const { workFunctionEv, ionizationEnergyEv, inputs } = result;
-  return renderSvg(spectrumFigure({
-    title,
-    subtitle: [
-      [
-        workFunctionEv ? `W = ${formatEstimate(workFunctionEv, "eV")}` : "no work function",
-        ...(result.valenceBandMaximumEv && ionizationEnergyEv
-          ? [`ionization energy ${formatEstimate(ionizationEnergyEv, "eV")}`]
-          : []),
-      ].join(", "),
-      `verdict: ${result.verdict}, h\u03bd = ${shortEv(inputs.photonEnergyEv.value)}`,
-    ],
-    axisTitle: inputs.axis.kind === "kinetic"
-      ? "Kinetic energy on the axis of the file / eV"
-      : "h\u03bd \u2212 binding energy / eV",
-    measured: shown.map((region) => ({
-      label: shown.length > 1 ? region.label || stem(region.file) : "",
-      curve: region,
-    })),
-    expected: null,
-    edges: [
-      ...edge("secondary cutoff", /cutoff/, result.cutoffFit, result.cutoffEv),
-      ...(result.fermiEdgeEv
-        ? edge("Fermi edge", /Fermi/, result.upperFit, result.fermiEdgeEv)
-        : edge("valence-band edge", /valence/, result.upperFit, result.upperFit?.positionEv ?? null)),
-    ],
-  }));
+export function noticeText({ message, place }: WorkFunctionResult["warnings"][number]): string {
+  return place === "" ? message : `${message} (at ${place})`;
 }

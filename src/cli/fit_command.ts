@@ -1,8 +1,18 @@
 import { buildCommand } from "@stricli/core";
-import { InputError } from "../base/mod.ts";
+import { cannot, InputError } from "../base/mod.ts";
+import type { Verdict } from "../edges/mod.ts";
+import { readCalibration } from "./calibration_file.ts";
 import { stem, writeFiles } from "./files.ts";
-import { fitFiles, fitJson, type FitStatements, fitSvg, fitText } from "./fit.ts";
-import { type Context, GOOD, jsonFlag, NOT_TRUSTED, optionalNumber, outFlag, text } from "./flags.ts";
+import { fitFiles, fitJson, type FitStatements } from "./fit.ts";
+import { fitEach } from "./fit_each.ts";
+import { fitSvg } from "./fit_figure.ts";
+import { explanationText, fitText } from "./fit_text.ts";
+import { type Context, count, GOOD, jsonFlag, NOT_TRUSTED, optionalNumber, outFlag, text } from "./flags.ts";
+
+/** Seed of the bootstrap unless one is given. */
+const DEFAULT_SEED = 1;
+/** Fewer replicates do not make a standard deviation. */
+const LEAST_REPLICATES = 10;
 
 function columnPair(text: string): readonly [string, string] {
   const names = text.split(",").map((name) => name.trim());
@@ -21,9 +31,22 @@ type FitFlags = {
   temperature?: number;
   acceptance?: number;
   fermiLevel?: number;
+  resolution?: number;
+  calibration?: string;
+  profile: boolean;
+  bootstrap?: number;
+  seed?: number;
+  each: boolean;
+  explain: boolean;
+  strict: boolean;
   out?: string;
   json: boolean;
 };
+
+/** A flag that is there or not. */
+function isSet(brief: string): { kind: "boolean"; brief: string; default: false; withNegated: false } {
+  return { kind: "boolean", brief, default: false, withNegated: false };
+}
 
 /** `fit` */
 export const fitCommand = buildCommand({
@@ -31,12 +54,15 @@ export const fitCommand = buildCommand({
     brief: "Fit both edges of a measured or simulated spectrum: work function with uncertainty",
     fullDescription: [
       "Fit both edges of a measured or simulated spectrum (CSV or ISO 14976) and print work function, maximum kinetic",
-      "energy and ionization energy with uncertainties. Several files or regions of one measurement are joined.",
+      "energy and ionization energy with uncertainties. Several files or regions of one measurement are joined; with",
+      "--each every file is a measurement of its own.",
       "",
       "Examples:",
       "  twoedge fit out/clean_gold_he1/spectrum.csv",
       "  twoedge fit cutoff.csv edge.csv --photon-energy 21.218 --bias -9",
       "  twoedge fit sample.vms --region SECO --region VBM --out out/sample",
+      "  twoedge fit sample.csv --calibration lines.csv --bootstrap 1000 --explain",
+      "  twoedge fit map/*.csv --each --strict --out out/map",
     ].join("\n"),
   },
   parameters: {
@@ -72,14 +98,59 @@ export const fitCommand = buildCommand({
       temperature: optionalNumber("Sample temperature, K", "K"),
       acceptance: optionalNumber("Half-angle of the analyzer's acceptance, degrees", "DEG"),
       fermiLevel: optionalNumber("Position of the Fermi level on the energy axis, eV", "EV"),
-      out: { ...outFlag, brief: "Folder for fit.json and fit.svg (default: none written)" },
+      resolution: optionalNumber("Energy resolution, full width at half maximum, eV", "EV"),
+      calibration: {
+        kind: "parsed",
+        parse: text,
+        brief: "CSV of reference lines: reference_ev, measured_ev, and standard_uncertainty_ev where known",
+        placeholder: "FILE",
+        optional: true,
+      },
+      profile: isSet("Also profile-likelihood intervals of both edges"),
+      bootstrap: {
+        kind: "parsed",
+        parse: count,
+        brief: "Also a parametric bootstrap with N replicates",
+        placeholder: "N",
+        optional: true,
+      },
+      seed: {
+        kind: "parsed",
+        parse: count,
+        brief: "Seed of the bootstrap (default: 1)",
+        placeholder: "N",
+        optional: true,
+      },
+      each: isSet("Fit every file by itself: a CSV row each, and with --out a figure each"),
+      explain: isSet("Tell in words what was done and why"),
+      strict: isSet("Doubtful answers end with exit code 1 too"),
+      out: {
+        ...outFlag,
+        brief:
+          "Folder for fit.json and fit.svg, with --each for results.csv and figures (default: none written)",
+      },
       json: jsonFlag,
     },
   },
   async func(this: Context, flags: FitFlags, ...paths: string[]) {
-    const run = await fitFiles(paths, fitStatements(flags));
+    const statements = await fitStatements(flags);
+    const isTrusted = (verdict: Verdict): boolean =>
+      verdict === "good" || (verdict === "doubtful" && !flags.strict);
+    if (flags.each) {
+      const table = await fitEach(paths, statements, flags.out !== undefined);
+      this.process.stdout.write(table.csv);
+      if (flags.out !== undefined) {
+        await writeFiles(flags.out, [["results.csv", table.csv], ...table.figures]);
+      }
+      this.exitCode = table.verdicts.every(isTrusted) ? GOOD : NOT_TRUSTED;
+      return;
+    }
+    const run = await fitFiles(paths, statements);
     const json = `${JSON.stringify(fitJson(run.result), null, 2)}\n`;
     this.process.stdout.write(flags.json ? json : `${fitText(run.result)}\n`);
+    if (flags.explain && !flags.json) {
+      this.process.stdout.write(`What was done and why:\n${explanationText(run.result)}\n`);
+    }
     if (flags.out !== undefined) {
       const written = await writeFiles(flags.out, [
         ["fit.json", json],
@@ -87,18 +158,20 @@ export const fitCommand = buildCommand({
       ]);
       if (!flags.json) this.process.stdout.write(`Wrote ${written.join(", ")}\n`);
     }
-    this.exitCode = run.result.verdict === "failed" ? NOT_TRUSTED : GOOD;
+    this.exitCode = isTrusted(run.result.verdict) ? GOOD : NOT_TRUSTED;
   },
 });
 
-/** Checks what the argument parser cannot: ranges. */
-function fitStatements(flags: FitFlags): FitStatements {
+/** Checks what the argument parser cannot: ranges, and flags that exclude each other. */
+async function fitStatements(flags: FitFlags): Promise<FitStatements> {
   const ranges = [
     ["--photon-energy", flags.photonEnergy, 1, 20000, "eV"],
     ["--bias", flags.bias, -1000, 1000, "V"],
     ["--temperature", flags.temperature, 0, 3000, "K"],
     ["--acceptance", flags.acceptance, 0, 90, "degrees"],
     ["--fermi-level", flags.fermiLevel, -1000, 20000, "eV"],
+    ["--resolution", flags.resolution, 1e-4, 10, "eV"],
+    ["--bootstrap", flags.bootstrap, LEAST_REPLICATES, 1e6, "replicates"],
   ] as const;
   const problems = ranges.flatMap(([place, value, low, high, unit]) =>
     value === undefined || (value >= low && value <= high) ? [] : [{
@@ -106,6 +179,11 @@ function fitStatements(flags: FitFlags): FitStatements {
       message: `Cannot fit as ${place} must be in ${low}..${high} ${unit}: current value is ${value} ${unit}`,
     }]
   );
+  if (flags.each && (flags.json || flags.explain)) {
+    const other = flags.json ? "--json" : "--explain";
+    const message = cannot("fit", `${other} must not be given with --each, which prints CSV`, other);
+    throw new InputError([{ place: other, message }]);
+  }
   if (problems.length > 0) throw new InputError(problems);
   const defined = {
     photonEnergyEv: flags.photonEnergy,
@@ -116,6 +194,12 @@ function fitStatements(flags: FitFlags): FitStatements {
     temperatureK: flags.temperature,
     acceptanceHalfAngleDeg: flags.acceptance,
     fermiLevelEv: flags.fermiLevel,
+    resolutionFwhmEv: flags.resolution,
+    scaleGain: flags.calibration === undefined ? undefined : (await readCalibration(flags.calibration)).gain,
+    profile: flags.profile || undefined,
+    bootstrap: flags.bootstrap === undefined
+      ? undefined
+      : { replicates: flags.bootstrap, seed: flags.seed ?? DEFAULT_SEED },
   };
   return Object.fromEntries(
     Object.entries(defined).filter(([, value]) => value !== undefined),

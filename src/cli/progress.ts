@@ -20,9 +20,15 @@ export interface TerminalStream {
  * @param label What is being done.
  * @param stream Usually standard error.
  * @param now Clock in milliseconds.
+ * @param things What is counted, to show how many are done a second. Default: no rate.
  * @returns The progress line.
  */
-export function progressLine(label: string, stream: TerminalStream, now: () => number): Progress {
+export function progressLine(
+  label: string,
+  stream: TerminalStream,
+  now: () => number,
+  things?: string,
+): Progress {
   if (!stream.isTTY) return { update: () => {}, end: () => {} };
   const start = now();
   let last = -Infinity;
@@ -32,7 +38,8 @@ export function progressLine(label: string, stream: TerminalStream, now: () => n
       if (time - last < 100 || done === 0) return;
       last = time;
       const left = ((time - start) / 1000) * (all / done - 1);
-      stream.write(`\r${label} ${Math.floor((100 * done) / all)} %, ${left.toFixed(0)} s left \x1b[K`);
+      const rate = things ? `, ${((1000 * done) / (time - start)).toPrecision(3)} ${things}/s` : "";
+      stream.write(`\r${label} ${Math.floor((100 * done) / all)} %${rate}, ${left.toFixed(0)} s left \x1b[K`);
     },
     end: () => stream.write("\r\x1b[K"),
   };

@@ -39,7 +39,7 @@ export const materialsCommand = buildCommand({
       return { id: chosen.id, name: chosen.name, values: listMaterialValues(chosen) };
     });
     const lines = name === undefined
-      ? values.map((entry) => `${entry.id.padEnd(4)}${entry.name}`)
+      ? values.map((entry) => `${entry.id.padEnd(17)}${entry.name}`)
       : values[0].values.map((row) =>
         `${row.quantity}: ${row.value} ${row.unit} [${row.confidence}] ${row.source}`
       );

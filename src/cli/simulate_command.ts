@@ -11,15 +11,26 @@ import {
   outFlag,
   scenarioArgument,
   setFlag,
+  text,
   workersFlag,
 } from "./flags.ts";
 import { progressLine } from "./progress.ts";
-import { loadScenario, simulate, type Simulation, spectrumCsv, spectrumSvg } from "./simulate.ts";
+import {
+  loadScenario,
+  simulate,
+  type SimulateOptions,
+  type Simulation,
+  spectrumCsv,
+  spectrumSvg,
+} from "./simulate.ts";
 
 type SimulateFlags = {
   out?: string;
   seed?: number;
   histories?: number;
+  until?: number;
+  checkpoint?: string;
+  replicate?: number;
   workers?: number;
   set?: readonly string[];
   json: boolean;
@@ -33,9 +44,17 @@ export const simulateCommand = buildCommand({
       "Simulate the spectrum of a scenario and write spectrum.csv, result.json and spectrum.svg. Ctrl-C stops early, writes",
       "what is done so far (result.json then says complete: false) and ends with exit code 1.",
       "",
+      "--until 0.5% follows photons until the relative standard error of the worst channel is below that, among channels",
+      "with more than a tenth of the highest counts; --histories is then the most that may be followed.",
+      "",
+      "--checkpoint FILE keeps the sums. The same command with more --histories, a smaller --until or other settings of",
+      "the instrument (resolution, window, step, dwell, flux, dead time) goes on from there, to the same bits as one long",
+      "run. Other changes are refused.",
+      "",
       "Examples:",
       "  twoedge simulate scenarios/clean_gold_he1.json",
       "  twoedge simulate scenarios/clean_gold_he1.json --set sample.temperatureK=77 --out out/cold",
+      "  twoedge simulate scenarios/clean_gold_he1.json --until 0.5% --checkpoint out/gold.sums",
     ].join("\n"),
   },
   parameters: {
@@ -52,7 +71,28 @@ export const simulateCommand = buildCommand({
       histories: {
         kind: "parsed",
         parse: decimal,
-        brief: "Photons to follow",
+        brief: "Photons to follow; with --until, at most",
+        placeholder: "N",
+        optional: true,
+      },
+      until: {
+        kind: "parsed",
+        parse: precision,
+        brief: "Relative standard error of the worst channel at which to stop, such as 0.5%",
+        placeholder: "PERCENT",
+        optional: true,
+      },
+      checkpoint: {
+        kind: "parsed",
+        parse: text,
+        brief: "File that keeps the sums, to go on from later",
+        placeholder: "FILE",
+        optional: true,
+      },
+      replicate: {
+        kind: "parsed",
+        parse: replicateNumber,
+        brief: "Which independent draw of the counting noise (default: 0)",
         placeholder: "N",
         optional: true,
       },
@@ -67,7 +107,13 @@ export const simulateCommand = buildCommand({
       ...(flags.seed === undefined ? [] : [`simulation.seed=${flags.seed}`]),
       ...(flags.histories === undefined ? [] : [`simulation.histories=${flags.histories}`]),
     ];
-    const simulation = await runScenario(this, path, overrides, flags.workers);
+    const { until, histories, checkpoint, replicate } = flags;
+    const simulation = await runScenario(this, path, overrides, flags.workers, {
+      ...(until !== undefined && { until }),
+      ...(until !== undefined && histories !== undefined && { mostHistories: histories }),
+      ...(checkpoint !== undefined && { checkpoint }),
+      ...(replicate !== undefined && { replicate }),
+    });
     if (simulation === null) return;
     const folder = flags.out ?? `out/${stem(path)}`;
     const written = await writeSimulation(simulation, folder);
@@ -92,6 +138,24 @@ export const simulateCommand = buildCommand({
   },
 });
 
+/** Parses `0.5%` as 0.005; a number without the sign could mean either. */
+function precision(text: string): number {
+  const value = text.endsWith("%") ? decimal(text.slice(0, -1)) / 100 : NaN;
+  if (!(value > 0 && value < 1)) {
+    throw new SyntaxError(`must be a percentage > 0% and < 100% such as 0.5%, not ${JSON.stringify(text)}`);
+  }
+  return value;
+}
+
+/** Parses a whole number 0..2^53 - 1. */
+function replicateNumber(text: string): number {
+  const value = decimal(text);
+  if (!Number.isSafeInteger(value) || value < 0) {
+    throw new SyntaxError(`must be a whole number 0..2^53 - 1, not ${JSON.stringify(text)}`);
+  }
+  return value;
+}
+
 /**
  * Loads and runs a scenario with progress. Ctrl-C stops it: the batches done so far are kept, and the exit code says that
  * they are not what was asked for; null when there are fewer than the two batches that a standard error needs.
@@ -101,6 +165,7 @@ export async function runScenario(
   path: string,
   overrides: readonly string[],
   workers: number | undefined,
+  options: Pick<SimulateOptions, "until" | "mostHistories" | "checkpoint" | "replicate"> = {},
 ): Promise<Simulation | null> {
   const { stderr } = context.process;
   const loaded = await loadScenario(path, overrides);
@@ -111,6 +176,7 @@ export async function runScenario(
   const progress = progressLine("Simulating", stderr, () => performance.now());
   try {
     const simulation = await simulate(loaded, {
+      ...options,
       workers: workers ?? Math.max(1, navigator.hardwareConcurrency),
       signal: stop.signal,
       onProgress: progress.update,
@@ -119,6 +185,9 @@ export async function runScenario(
     if (simulation.result.complete) return simulation;
     context.exitCode = NOT_TRUSTED;
     stderr.write(`Stopped after ${simulation.result.histories} histories\n`);
+    if (options.checkpoint !== undefined) {
+      stderr.write(`The same command goes on from the sums in ${options.checkpoint}\n`);
+    }
     return simulation.result.histories > HISTORIES_PER_BATCH ? simulation : null;
   } finally {
     progress.end();

@@ -4,9 +4,26 @@ import { type Cited, cited, type Confidence, confidence } from "./cited.ts";
 import { HC_EV_NM } from "./constants.ts";
 import Ag from "./materials/Ag.json" with { type: "json" };
 import Al from "./materials/Al.json" with { type: "json" };
+import Al2O3 from "./materials/Al2O3.json" with { type: "json" };
 import Au from "./materials/Au.json" with { type: "json" };
+import contamination from "./materials/C_contamination.json" with { type: "json" };
+import graphite from "./materials/C_graphite.json" with { type: "json" };
+import Cs from "./materials/Cs.json" with { type: "json" };
 import Cu from "./materials/Cu.json" with { type: "json" };
+import Fe from "./materials/Fe.json" with { type: "json" };
+import ITO from "./materials/ITO.json" with { type: "json" };
+import K from "./materials/K.json" with { type: "json" };
+import Mg from "./materials/Mg.json" with { type: "json" };
+import Mo from "./materials/Mo.json" with { type: "json" };
+import Na from "./materials/Na.json" with { type: "json" };
+import Ni from "./materials/Ni.json" with { type: "json" };
+import Pt from "./materials/Pt.json" with { type: "json" };
+import Si from "./materials/Si.json" with { type: "json" };
+import SiO2 from "./materials/SiO2.json" with { type: "json" };
+import Ta from "./materials/Ta.json" with { type: "json" };
+import Ti from "./materials/Ti.json" with { type: "json" };
 import W from "./materials/W.json" with { type: "json" };
+import Zn from "./materials/Zn.json" with { type: "json" };
 
 /** A Gaussian group of bands with sources. */
 export interface CitedLobe {
@@ -191,7 +208,30 @@ export function parseMaterial(value: unknown): Material {
 }
 
 const materials: ReadonlyMap<string, Material> = new Map(
-  [Au, Ag, Cu, Al, W].map((entry) => [entry.id, parseMaterial(entry)]),
+  [
+    Au,
+    Ag,
+    Cu,
+    Al,
+    W,
+    Ni,
+    Pt,
+    Mo,
+    Ta,
+    Na,
+    K,
+    Cs,
+    Mg,
+    Zn,
+    Ti,
+    Fe,
+    graphite,
+    Si,
+    SiO2,
+    Al2O3,
+    contamination,
+    ITO,
+  ].map((entry) => [entry.id, parseMaterial(entry)]),
 );
 
 /** Short names of the built-in materials. */

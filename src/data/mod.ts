@@ -21,3 +21,4 @@ export {
   opticalConstantsAt,
   parseMaterial,
 } from "./materials.ts";
+export { materialFrom } from "./user_material.ts";

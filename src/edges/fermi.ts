@@ -1,6 +1,6 @@
 import { type FitParameter, minimizePoisson } from "../fit/mod.ts";
 import { broadenedFermiEdge } from "../spectrum/mod.ts";
-import { type FittedEdge, fittedEdge } from "./cutoff.ts";
+import { type FittedEdge, fittedEdge, type IntervalOptions, NO_INTERVALS } from "./fitted_edge.ts";
 import { type EdgeCandidate, meanCounts } from "./locate.ts";
 import { ghosts, type Satellite } from "./satellites.ts";
 
@@ -12,6 +12,8 @@ export interface FermiOptions {
   readonly satellites: readonly Satellite[];
   /** Start value of the Gaussian standard deviation, eV. */
   readonly startSigmaEv: number;
+  /** Intervals beyond the covariance. Default: none. */
+  readonly intervals?: IntervalOptions;
 }
 
 /** A Fermi edge with the height of its step, to judge whether it is one. */
@@ -20,6 +22,8 @@ export interface FittedFermiEdge extends FittedEdge {
   readonly stepCounts: number;
   /** Standard error of that. */
   readonly stepStandardError: number;
+  /** `true` when the lamp's satellites above the main line are part of the model. */
+  readonly withSatellites: boolean;
   /** Standard uncertainty of the position from the assumed form of the states, eV. */
   readonly statesUncertaintyEv: number;
 }
@@ -124,24 +128,58 @@ export function fitFermiEdge(
       }
     }
   };
-  const linear = minimizePoisson({ parameters, model, data });
-  const curved = minimizePoisson({
+  /** The model is linear in all but position and sigma, given the others. */
+  const derivative = (index: number, p: Float64Array, out: Float64Array): boolean => {
+    if (index < 2) return false;
+    const isCopy = withSatellites && index >= 5 && index < firstBelow;
+    if (index === 4 || isCopy) {
+      for (let i = 0; i < window.length; i++) out[i] = isCopy ? copied.copies[index - 5][i] : 1;
+      return true;
+    }
+    const edgeShape = broadenedFermiEdge(options.thermalEnergyEv, p[1]);
+    const curve = p.length > parameters.length ? p[parameters.length] : 0;
+    const ofStates = (x: number): number => {
+      edgeShape(x, shape);
+      if (index === 2) return shape.occupation;
+      if (index === 3) return shape.slopeEv;
+      if (index === parameters.length) return shape.curveEv2;
+      return p[2] * shape.occupation + p[3] * shape.slopeEv + curve * shape.curveEv2;
+    };
+    const line = index >= firstBelow && index < parameters.length ? belowMain[index - firstBelow] : null;
+    for (let i = 0; i < window.length; i++) {
+      const x = window[i] - p[0];
+      if (line !== null) out[i] = ofStates(x - line.shiftEv);
+      else if (!withSatellites && index === 5) out[i] = x;
+      else {
+        out[i] = ofStates(x);
+        for (let s = 0; s < belowMain.length; s++) {
+          out[i] += p[firstBelow + s] * ofStates(x - belowMain[s].shiftEv);
+        }
+      }
+    }
+    return true;
+  };
+  const linearProblem = { parameters, model, derivative, data };
+  const linear = minimizePoisson(linearProblem);
+  const curvedProblem = {
     parameters: [
       ...parameters.map((parameter, i) => ({ ...parameter, start: linear.values[i] })),
       { name: "statesCurve", start: 0, scale: height },
     ],
     model,
+    derivative,
     data,
-  });
+    expected: linear.fitted,
+  };
+  const curved = minimizePoisson(curvedProblem);
   const useCurved = curved.converged && linear.deviance - curved.deviance > CURVE_GAIN;
   const fit = useCurved ? curved : linear;
-  const edge = fittedEdge(fit, window, data, {
-    stepEv,
+  const edge = fittedEdge(fit, useCurved ? curvedProblem : linearProblem, window, {
     vital: ["position"],
     model: `${useCurved ? "quadratic" : "linear"} states x Fermi-Dirac, Gaussian response, ${
       withSatellites ? `background and ${copied.copies.length} satellites` : "sloping background"
     }${belowMain.length > 0 ? `, ${belowMain.length} line below` : ""}`,
-  });
+  }, options.intervals ?? NO_INTERVALS);
   const difference = curved.values[0] - linear.values[0];
   const expected = curved.standardErrors[0] ** 2 - linear.standardErrors[0] ** 2;
   const statesUncertaintyEv = useCurved || !curved.converged
@@ -151,6 +189,7 @@ export function fitFermiEdge(
     ...edge,
     stepCounts: fit.values[2],
     stepStandardError: fit.standardErrors[2],
+    withSatellites,
     statesUncertaintyEv,
   };
 }

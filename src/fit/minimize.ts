@@ -27,6 +27,11 @@ export interface FitProblem {
   readonly parameters: readonly FitParameter[];
   /** Fills `out` with the model values, shape (n); never called outside the bounds. */
   readonly model: (parameters: Float64Array, out: Float64Array) => void;
+  /**
+   * Fills `out` with the derivative of the model by parameter `index` and returns `true`, or returns `false` to have it
+   * taken by central differences. Default: central differences for all.
+   */
+  readonly derivative?: (index: number, parameters: Float64Array, out: Float64Array) => boolean;
   /** Data, shape (n). */
   readonly data: Float64Array;
   /** Standard deviations of the data, each > 0, shape (n). */
@@ -148,11 +153,15 @@ export function minimize(problem: FitProblem): FitResult {
     return { values, model, residuals, chiSquare: dot(residuals, residuals) };
   }
 
-  /** Derivatives of the whitened model by central differences; one-sided at a bound or beside a value not finite. */
+  /** Derivatives of the whitened model; central differences are one-sided at a bound or beside a value not finite. */
   function jacobian(at: Point): Float64Array[] {
     return parameters.map(({ fixed }, j) => {
       const column = new Float64Array(n);
       if (fixed) return column;
+      if (problem.derivative?.(j, at.values, column)) {
+        for (let i = 0; i < n; i++) column[i] /= sigma[i];
+        return column;
+      }
       const h = DERIVATIVE_STEP * Math.max(scales[j], Math.abs(at.values[j]));
       const [high, low] = [h, -h].map((change) => {
         const value = clamp(at.values[j] + change, lower[j], upper[j]);

@@ -2,7 +2,10 @@ import { cannot } from "../base/mod.ts";
 import { type FitProblem, type FitResult, minimize } from "./minimize.ts";
 
 /** A Poisson problem: the data are counts, each >= 0, and the model predicts them. */
-export type PoissonProblem = Omit<FitProblem, "sigma">;
+export interface PoissonProblem extends Omit<FitProblem, "sigma"> {
+  /** Expected counts near the answer, such as an earlier fit: the first variances. Default: smoothed counts. */
+  readonly expected?: Float64Array;
+}
 
 /** A maximum-likelihood fit; `chiSquare` is Pearson's, with the variance of the model. */
 export interface PoissonFit extends FitResult {
@@ -59,7 +62,8 @@ export function minimizePoisson(problem: PoissonProblem): PoissonFit {
   if (negative !== undefined) throw new RangeError(cannot("fit", "counts must be >= 0", negative));
   let parameters = problem.parameters;
   // The first variances come from the counts, averaged over three channels so that empty ones get a fair weight.
-  let variance = data.map((count, i) => (count + (data[i - 1] ?? count) + (data[i + 1] ?? count)) / 3 + 0.5);
+  let variance = problem.expected?.map((mean) => Math.max(mean, LEAST_VARIANCE)) ??
+    data.map((count, i) => (count + (data[i - 1] ?? count) + (data[i + 1] ?? count)) / 3 + 0.5);
   let fit: FitResult;
   let evaluations = 0;
   let settled = false;

@@ -1,33 +1,32 @@
 import { parse } from "csv-parse/sync";
-import { cannot, InputError, type Problem, suggest } from "../base/mod.ts";
-import { energyKindOf, firstOutOfOrder, type SpectrumFile } from "./region.ts";
+import { cannot, InputError, suggest } from "../base/mod.ts";
+import { headLines, headReader, type ProblemList, problemList, type RegionFacts } from "./head.ts";
+import {
+  ascending,
+  energyKindOf,
+  firstOutOfOrder,
+  MAX_POINTS,
+  type SpectrumFile,
+  type SpectrumRegion,
+} from "./region.ts";
 import { MUST_BE_DECIMAL, MUST_NOT_BE_EMPTY, numberRule } from "./text.ts";
 
-/** Fewest and most data rows of a spectrum. */
+/** Fewest data rows of a spectrum. */
 const MIN_ROWS = 5;
-const MAX_ROWS = 1_000_000;
-const MAX_PROBLEMS = 10;
 
-const ENERGY_NAMES = ["kinetic_energy_ev", "binding_energy_ev"];
-const COUNTS_NAME = "counts";
-
-/** Metadata keys with a number, and the rule for it beyond being one. */
-const NUMERIC_KEYS: Readonly<Record<string, readonly [string, (value: number) => boolean]>> = {
-  photon_energy_ev: ["must be > 0 eV", (value) => value > 0],
-  bias_v: ["must be finite", Number.isFinite],
-  analyzer_work_function_ev: ["must be finite", Number.isFinite],
-  pass_energy_ev: ["must be > 0 eV", (value) => value > 0],
-  dwell_s: ["must be > 0 s", (value) => value > 0],
-  acceptance_half_angle_deg: ["must be in > 0..90 degrees", (value) => value > 0 && value <= 90],
-  temperature_k: ["must be >= 0 K", (value) => value >= 0],
-  sweeps: ["must be a whole number >= 1", (value) => Number.isInteger(value) && value >= 1],
+/** Name of the energy column by kind. */
+const ENERGY_NAMES: Readonly<Record<SpectrumRegion["energyKind"], string>> = {
+  kinetic: "kinetic_energy_ev",
+  binding: "binding_energy_ev",
+  unknown: "energy_ev",
 };
+const COUNTS_NAME = "counts";
 
 /** How {@link readSpectrumCsv} finds its columns. */
 export interface CsvOptions {
   /**
    * Names of the energy and the counts column, in this order; upper and lower case are the same.
-   * Default: `kinetic_energy_ev` or `binding_energy_ev`, and `counts`.
+   * Default: `kinetic_energy_ev`, `binding_energy_ev` or `energy_ev` (kind not stated), and `counts`.
    */
   readonly columns?: readonly [string, string];
 }
@@ -37,8 +36,10 @@ export interface CsvOptions {
  * (or by the semicolons or tabs of the header row).
  *
  * Keys that fill fields: `photon_energy_ev`, `bias_v`, `analyzer_work_function_ev`, `pass_energy_ev`, `dwell_s`,
- * `sweeps`, `region`; all keys stay in `metadata`, `#` lines without a key in `comments`. Further columns are kept when
- * every cell is a number, else left out. Energies may descend; there are 5 to 1 000 000 rows.
+ * `sweeps`, `region`, `species`, and `as_recorded` (true or false, by default true when there is a bias: see
+ * `SpectrumRegion.asRecorded`). Other keys go to `metadata`; `#` lines without a key, and what follows `##`, to
+ * `comments`. Further columns are kept when every cell is a number or empty, else left out. Energies may descend; there
+ * are 5 to 1 000 000 rows.
  *
  * @param text The decoded file.
  * @param fileName Name for messages.
@@ -58,12 +59,13 @@ export interface CsvOptions {
 export function readSpectrumCsv(text: string, fileName: string, options: CsvOptions = {}): SpectrumFile {
   const problems = problemList(fileName);
   refuseTooManyRows(text, fileName);
-  const { table, comments, metadata, values, numbers } = splitComments(text, problems);
+  const { table, facts } = splitHead(text, problems);
   const delimiter = delimiterOf(table);
 
   let header: Header | undefined;
   let cells: number[][] = [];
   const rowLines: number[] = [];
+  const wordColumns = new Set<number>();
   let isFirstRow = true;
 
   const takeRow = (row: readonly string[], line: number) => {
@@ -96,7 +98,10 @@ export function readSpectrumCsv(text: string, fileName: string, options: CsvOpti
     row.forEach((cell, column) => {
       const rule = numberRule(cell);
       cells[column].push(rule === undefined ? Number(cell) : NaN);
-      if (column !== energy && column !== counts) return;
+      if (column !== energy && column !== counts) {
+        if (rule !== undefined && rule !== MUST_NOT_BE_EMPTY) wordColumns.add(column);
+        return;
+      }
       const action = `read column "${names[column]}"`;
       if (rule !== undefined) {
         const mixed = cell.includes(";") ? `${rule}, and decimal commas must become points` : rule;
@@ -151,50 +156,25 @@ export function readSpectrumCsv(text: string, fileName: string, options: CsvOpti
   problems.throwIfAny();
 
   const isDescending = energies[0] > energies[1];
-  const columns = cells.map((values) => Float64Array.from(isDescending ? values.reverse() : values));
-  const kept = names.flatMap((name, i) => columns[i].some(Number.isNaN) ? [] : [[name, columns[i]] as const]);
+  const column = (i: number) => ascending(Float64Array.from(cells[i]), isDescending);
+  const kept = names.flatMap((name, i) =>
+    i === energy || i === counts || wordColumns.has(i) ? [] : [[name, column(i)] as const]
+  );
+  const energyName = names[energy].toLowerCase();
+  const labels = {
+    ...(Object.values(ENERGY_NAMES).includes(energyName) ? {} : { "abscissa label": names[energy] }),
+    ...(names[counts].toLowerCase() === COUNTS_NAME ? {} : { "counts label": names[counts] }),
+  };
   return {
     format: "csv",
     regions: [{
-      label: values.get("region") ?? "",
-      species: "",
-      energyKind: /^(kinetic|binding)/i.test(names[energy]) ? energyKindOf(names[energy]) : "unknown",
-      energiesEv: columns[energy],
-      counts: columns[counts],
-      photonEnergyEv: numbers.get("photon_energy_ev") ?? null,
-      biasV: numbers.get("bias_v") ?? null,
-      analyzerWorkFunctionEv: numbers.get("analyzer_work_function_ev") ?? null,
-      passEnergyEv: numbers.get("pass_energy_ev") ?? null,
-      dwellS: numbers.get("dwell_s") ?? null,
-      sweeps: numbers.get("sweeps") ?? null,
-      comments,
-      metadata: Object.fromEntries(metadata),
+      ...facts,
+      metadata: { ...labels, ...facts.metadata },
+      energyKind: /^(kinetic|binding)/.test(energyName) ? energyKindOf(energyName) : "unknown",
+      energiesEv: column(energy),
+      counts: column(counts),
       columns: Object.fromEntries(kept),
     }],
-  };
-}
-
-interface ProblemList {
-  /** Line 0 stands for the whole file. */
-  add(line: number, action: string, rule: string, value: unknown): void;
-  throwIfAny(): void;
-}
-
-function problemList(fileName: string): ProblemList {
-  const problems: Problem[] = [];
-  let more = 0;
-  return {
-    add(line, action, rule, value) {
-      if (problems.length === MAX_PROBLEMS) more++;
-      else {
-        const place = line === 0 ? fileName : `${fileName}:${line}`;
-        problems.push({ place, message: cannot(action, rule, value) });
-      }
-    },
-    throwIfAny() {
-      if (more > 0) problems.push({ place: fileName, message: `and ${more} more` });
-      if (problems.length > 0) throw new InputError(problems);
-    },
   };
 }
 
@@ -205,11 +185,11 @@ function refuseTooManyRows(text: string, fileName: string): void {
   let line = 1;
   for (let start = 0; start >= 0 && start < text.length; line++) {
     if (!"#\r\n".includes(text[start])) rows++;
-    if (rows > MAX_ROWS + 1) {
+    if (rows > MAX_POINTS + 1) {
       const message = cannot(
         "read the table",
-        `there must be at most ${MAX_ROWS} rows of numbers`,
-        `more than ${MAX_ROWS}`,
+        `there must be at most ${MAX_POINTS} rows of numbers`,
+        `more than ${MAX_POINTS}`,
       );
       throw new InputError([{ place: `${fileName}:${line}`, message }]);
     }
@@ -218,45 +198,14 @@ function refuseTooManyRows(text: string, fileName: string): void {
   }
 }
 
-interface Comments {
-  /** The text with every `#` line blanked, so that line numbers stay. */
-  readonly table: string;
-  readonly comments: string[];
-  /** Values by key as written. */
-  readonly metadata: Map<string, string>;
-  /** Values by key in lower case. */
-  readonly values: Map<string, string>;
-  /** Values of the {@link NUMERIC_KEYS}. */
-  readonly numbers: Map<string, number>;
-}
-
-function splitComments(text: string, problems: ProblemList): Comments {
-  const comments: string[] = [];
-  const metadata = new Map<string, string>();
-  const values = new Map<string, string>();
-  const numbers = new Map<string, number>();
+/** What the `#` lines say, and the text with these lines blanked, so that line numbers stay. */
+function splitHead(text: string, problems: ProblemList): { table: string; facts: RegionFacts } {
+  const head = headReader(problems);
   const lines = text.split(/\r\n|\n|\r/);
   lines.forEach((line, index) => {
-    if (!/^\s*#/.test(line)) return;
-    lines[index] = "";
-    const content = line.trim().slice(1).trim();
-    const keyed = /^([^:]+?)\s*:(?:\s+(.*))?$/s.exec(content);
-    if (keyed === null) {
-      if (content !== "") comments.push(content);
-      return;
-    }
-    const [, key, value = ""] = keyed;
-    const known = key.toLowerCase();
-    if (values.has(known)) problems.add(index + 1, `read "${key}"`, "every key must be given once", content);
-    values.set(known, value);
-    metadata.set(key, value);
-    if (!Object.hasOwn(NUMERIC_KEYS, known)) return;
-    const [rangeRule, isInRange] = NUMERIC_KEYS[known];
-    const rule = numberRule(value) ?? (isInRange(Number(value)) ? undefined : rangeRule);
-    if (rule === undefined) numbers.set(known, Number(value));
-    else problems.add(index + 1, `read "${key}"`, `it ${rule}`, value);
+    if (head.take(line, index + 1)) lines[index] = "";
   });
-  return { table: lines.join("\n"), comments, metadata, values, numbers };
+  return { table: lines.join("\n"), facts: head.facts() };
 }
 
 function delimiterOf(table: string): string {
@@ -279,7 +228,8 @@ interface Header {
 }
 
 function headerRule(): string {
-  return `there must be a header row with the columns ${ENERGY_NAMES.join(" or ")}, and ${COUNTS_NAME} ` +
+  const names = Object.values(ENERGY_NAMES).join(" or ");
+  return `there must be a header row with the columns ${names}, and ${COUNTS_NAME} ` +
     "(or others named by --columns ENERGY,COUNTS)";
 }
 
@@ -307,7 +257,7 @@ function readHeader(row: readonly string[], line: number, fileName: string, opti
     if (energy === counts) throw fail("--columns must name two different columns", options.columns.join(","));
     return { names: row, energy, counts };
   }
-  const energyNames = ENERGY_NAMES.filter((name) => lower.includes(name));
+  const energyNames = Object.values(ENERGY_NAMES).filter((name) => lower.includes(name));
   if (energyNames.length > 1) {
     throw fail("--columns must say which energy column to take", energyNames.join(","));
   }
@@ -322,6 +272,8 @@ export interface CsvColumn {
   readonly name: string;
   /** Finite numbers, as many as in the other columns. */
   readonly values: ArrayLike<number>;
+  /** `true` when NaN stands for a number that is not known and becomes an empty cell. Default: false. */
+  readonly mayBeUnknown?: boolean;
 }
 
 /**
@@ -353,22 +305,43 @@ export function writeSpectrumCsv(
     return `# ${key}: ${value}`.trimEnd();
   });
   const rowCount = columns[0].values.length;
-  for (const { name, values } of columns) {
+  for (const { name, values, mayBeUnknown = false } of columns) {
     if (values.length !== rowCount) {
       throw new RangeError(
         cannot(`write column "${name}"`, `it must have ${rowCount} values`, values.length),
       );
     }
-    const wrong = Array.from(values).findIndex((value) => !Number.isFinite(value));
+    const wrong = Array.from(values).findIndex((value) =>
+      !Number.isFinite(value) && !(mayBeUnknown && Number.isNaN(value))
+    );
     if (wrong >= 0) {
       throw new RangeError(cannot(`write column "${name}"`, `value ${wrong} must be finite`, values[wrong]));
     }
   }
   const rows = Array.from(
     { length: rowCount },
-    (_, i) => columns.map(({ values }) => String(values[i])).join(","),
+    (_, i) => columns.map(({ values }) => Number.isNaN(values[i]) ? "" : String(values[i])).join(","),
   );
   return [...head, columns.map(({ name }) => quoted(name)).join(","), ...rows, ""].join("\n");
+}
+
+/**
+ * Writes a region as CSV so that {@link readSpectrumCsv} gives the same back.
+ *
+ * @param region The region, of at least 5 points.
+ * @returns The text.
+ * @throws {RangeError} If CSV cannot hold it, such as two columns of one name.
+ */
+export function writeRegionCsv(region: SpectrumRegion): string {
+  const head = headLines(region);
+  const broken = head.find((line) => /[\r\n]/.test(line));
+  if (broken !== undefined) throw new RangeError(cannot("write the file", "texts must be one line", broken));
+  const table = writeSpectrumCsv([], [
+    { name: ENERGY_NAMES[region.energyKind], values: region.energiesEv },
+    { name: COUNTS_NAME, values: region.counts },
+    ...Object.entries(region.columns).map(([name, values]) => ({ name, values, mayBeUnknown: true })),
+  ]);
+  return [...head, table].join("\n");
 }
 
 function refuseNames(what: string, names: readonly string[], forbidden: RegExp): void {

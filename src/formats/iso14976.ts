@@ -1,15 +1,26 @@
 import { cannot, InputError } from "../base/mod.ts";
-import { energyKindOf, firstOutOfOrder, type SpectrumFile, type SpectrumRegion } from "./region.ts";
+import { keyedValue, metadataOf } from "./head.ts";
+import {
+  ascending,
+  energyKindOf,
+  firstOutOfOrder,
+  MAX_POINTS,
+  type SpectrumFile,
+  type SpectrumRegion,
+} from "./region.ts";
 import { ISO_14976_IDENTIFIER, numberRule } from "./text.ts";
 
 /** The number that stands for "unknown" (ISO 14976, also written 1e+037). */
-const UNKNOWN = 1e37;
+export const UNKNOWN = 1e37;
 
 /** Experiment modes whose blocks are spectra. */
 const EXPERIMENT_MODES = ["NORM", "SDP", "MAP", "MAPDP"];
 
+/** Techniques whose source energy is a photon energy. */
+export const PHOTON_TECHNIQUES: readonly string[] = ["UPS", "XPS"];
+
 /** Techniques whose blocks are electron spectra; the others have further items. */
-const TECHNIQUES = ["AES diff", "AES dir", "ELS", "UPS", "XPS"];
+export const TECHNIQUES: readonly string[] = ["AES diff", "AES dir", "ELS", ...PHOTON_TECHNIQUES];
 
 /** Allowed difference between stated and found extremes: files round the stated ones. */
 const EXTREME_RELATIVE = 1e-4;
@@ -24,7 +35,9 @@ const EXTREME_ABSOLUTE = 1e-6;
  * `metadata`, so that a rate can be told from counts. Stated minima and maxima must agree with the ordinates within
  * 1e-4, which catches lost and altered lines; two zeros there mean "not stated" in real files.
  *
- * 1E37 becomes `null`, and so does 0 where it cannot be a value: photon energy, pass energy, dwell, sweeps.
+ * 1E37 becomes `null`, and so does 0 where it cannot be a value: photon energy, pass energy, dwell, sweeps. Energies of
+ * REGULAR scans are rounded to the decimals of start and increment, so that 0 + 3 x 0.1 is 0.3. Comment lines
+ * `# key: value` become metadata, as `writeIso14976` writes what the format has no item for.
  *
  * Source: W. A. Dench, L. B. Hazell, M. P. Seah, Surf. Interface Anal. 13, 63 (1988); ISO 14976:1998.
  *
@@ -51,6 +64,8 @@ interface Experiment {
   readonly isRegular: boolean;
   readonly comments: readonly string[];
   readonly metadata: readonly Entry[];
+  /** Metadata written as comments. */
+  readonly stated: readonly Entry[];
   readonly variables: readonly Labeled[];
   readonly futureBlockEntries: number;
 }
@@ -67,7 +82,8 @@ function readExperiment(items: ItemReader): Experiment {
   const metadata = ["institution", "instrument", "operator", "experiment"].map((
     key,
   ): Entry => [key, items.text(key)]);
-  const comments = items.repeat("experiment comment lines", () => items.text("experiment comment line"));
+  const stated: Entry[] = [];
+  const comments = readComments(items, "experiment comment line", stated);
   const mode = items.oneOf("experiment mode", EXPERIMENT_MODES);
   const isRegular = items.oneOf("scan mode", ["REGULAR", "IRREGULAR"]) === "REGULAR";
   items.count("number of spectral regions");
@@ -82,11 +98,25 @@ function readExperiment(items: ItemReader): Experiment {
     const rule = "inclusion and exclusion lists are not supported, the number must be 0";
     throw items.error("number of entries in the inclusion or exclusion list", rule, listed);
   }
-  items.repeat("manually entered items", () => items.number("manually entered item"));
+  const manual = items.repeat("manually entered items", () => items.number("manually entered item"));
+  if (manual.length > 0) metadata.push(["manually entered items", manual.join(" ")]);
+  if (mode !== "NORM") metadata.push(["experiment mode", mode]);
   const futureEntries = items.count("number of future upgrade experiment entries");
   const futureBlockEntries = items.count("number of future upgrade block entries");
-  for (let i = 0; i < futureEntries; i++) items.text("future upgrade experiment entry");
-  return { mode, isRegular, comments, metadata, variables, futureBlockEntries };
+  for (let i = 0; i < futureEntries; i++) comments.push(items.text("future upgrade experiment entry"));
+  return { mode, isRegular, comments, metadata, stated, variables, futureBlockEntries };
+}
+
+/** Comment lines; those of the form `# key: value` go to `stated`, and `## #` stands for a comment that begins with #. */
+function readComments(items: ItemReader, item: string, stated: Entry[]): string[] {
+  const comments: string[] = [];
+  items.repeat(`${item}s`, () => {
+    const line = items.text(item);
+    const keyed = /^# [^#]/.test(line) ? keyedValue(line.slice(2)) : undefined;
+    if (keyed !== undefined) stated.push(keyed);
+    else comments.push(line.startsWith("## #") ? line.slice(3) : line);
+  });
+  return comments;
 }
 
 function readBlock(items: ItemReader, experiment: Experiment): SpectrumRegion {
@@ -104,8 +134,8 @@ function readBlock(items: ItemReader, experiment: Experiment): SpectrumRegion {
     if (value !== null) keep(key, `${value} ${units}`.trim());
     return value;
   };
-  const keepPositive = (key: string, units = ""): number | null => {
-    const value = keepNumber(key, units);
+  const knownPositive = (key: string): number | null => {
+    const value = items.known(key);
     if (value !== null && value < 0) {
       throw items.error(key, "it must be > 0, or 0 where it is not known", value);
     }
@@ -116,7 +146,8 @@ function readBlock(items: ItemReader, experiment: Experiment): SpectrumRegion {
   const label = items.text("block identifier");
   keepText("sample");
   keepDate(items, keep);
-  const comments = items.repeat("block comment lines", () => items.text("block comment line"));
+  const stated = [...experiment.stated];
+  const comments = readComments(items, "block comment line", stated);
   const technique = items.oneOf("technique", TECHNIQUES);
   keep("technique", technique);
   if (isMap) keepAll("", "x coordinate", "y coordinate");
@@ -125,20 +156,26 @@ function readBlock(items: ItemReader, experiment: Experiment): SpectrumRegion {
   if (isDepthProfile) {
     keepAll("", "sputtering ion atomic number", "sputtering ion number of atoms", "sputtering ion charge");
   }
-  const sourceEnergyEv = keepPositive("source energy", "eV");
+  const sourceEnergyEv = knownPositive("source energy");
+  const isPhotonSource = PHOTON_TECHNIQUES.includes(technique);
+  if (!isPhotonSource && sourceEnergyEv !== null) keep("source energy", `${sourceEnergyEv} eV`);
   keepNumber("source strength");
   keepAll("um", "source beam width x", "source beam width y");
   if (isMap) keepAll("um", "field of view x", "field of view y");
   keepAll("degree", "source polar angle of incidence", "source azimuth");
   const analyzerMode = keepText("analyzer mode");
-  const passEnergyOrRatio = keepPositive("analyzer pass energy or retard ratio");
+  const passEnergyOrRatio = knownPositive("analyzer pass energy or retard ratio");
+  const isPassEnergy = analyzerMode.toUpperCase() === "FAT";
+  if (!isPassEnergy && passEnergyOrRatio !== null) {
+    keep("analyzer pass energy or retard ratio", String(passEnergyOrRatio));
+  }
   if (technique === "AES diff") keepNumber("differential width", "eV");
   keepNumber("magnification of analyzer transfer lens");
-  const analyzerWorkFunctionEv = keepNumber("analyzer work function", "eV");
-  const biasV = keepNumber("target bias", "V");
+  const analyzerWorkFunctionEv = items.known("analyzer work function");
+  const biasV = items.known("target bias");
   keepAll("um", "analysis width x", "analysis width y");
   keepAll("degree", "analyzer axis take-off polar angle", "analyzer axis take-off azimuth");
-  const species = [items.text("species label"), items.text("transition or charge state label")].join(" ")
+  const species = [items.text("species label"), keepText("transition or charge state label")].join(" ")
     .trim();
   keepNumber("charge of detected particle");
 
@@ -161,10 +198,16 @@ function readBlock(items: ItemReader, experiment: Experiment): SpectrumRegion {
   keep("abscissa label", axis.label);
   keep("counts label", variables[energyVariables].label);
   keep("counts units", variables[energyVariables].units);
+  for (const { label, units } of variables.slice(energyVariables + 1)) {
+    keep(`units of column ${label}`, units);
+  }
 
   keepText("signal mode");
-  const dwellS = keepPositive("signal collection time", "s");
-  const sweeps = keepPositive("number of scans");
+  const dwellS = knownPositive("signal collection time");
+  const sweeps = knownPositive("number of scans");
+  if (sweeps !== null && !Number.isInteger(sweeps)) {
+    throw items.error("number of scans", "it must be a whole number", sweeps);
+  }
   keepNumber("signal time correction", "s");
   if (isDepthProfile) {
     keepAll("eV", "sputtering source energy");
@@ -178,13 +221,15 @@ function readBlock(items: ItemReader, experiment: Experiment): SpectrumRegion {
     const { label, units } = items.labeled("additional numerical parameter");
     keepNumber(`parameter ${label}`, units);
   });
-  for (let i = 0; i < experiment.futureBlockEntries; i++) items.text("future upgrade block entry");
+  for (let i = 0; i < experiment.futureBlockEntries; i++) {
+    comments.push(items.text("future upgrade block entry"));
+  }
 
   const ordinates = readOrdinates(items, labels);
   const pointCount = ordinates[0].length;
   const energies = abscissa === undefined
     ? ordinates[0]
-    : Float64Array.from({ length: pointCount }, (_, i) => abscissa.startEv + i * abscissa.incrementEv);
+    : regularEnergiesEv(abscissa.startEv, abscissa.incrementEv, pointCount);
   const counts = ordinates[energyVariables];
   const ordinateError = (variable: number, point: number, rule: string, value: unknown) =>
     items.error(
@@ -204,24 +249,61 @@ function readBlock(items: ItemReader, experiment: Experiment): SpectrumRegion {
   }
 
   const isDescending = energies[0] > energies[pointCount - 1];
-  const ascending = (values: Float64Array) => isDescending ? values.toReversed() : values;
-  const isPhotonSource = technique === "XPS" || technique === "UPS";
+  const further = labels.flatMap((label, i) =>
+    i <= energyVariables ? [] : [[label, ascending(ordinates[i], isDescending)] as const]
+  );
   return {
     label,
     species,
     energyKind: energyKindOf(axis.label),
-    energiesEv: ascending(energies),
-    counts: ascending(counts),
+    energiesEv: ascending(energies, isDescending),
+    counts: ascending(counts, isDescending),
     photonEnergyEv: isPhotonSource ? sourceEnergyEv : null,
     biasV,
+    asRecorded: stated.some(([key, value]) => key === "as_recorded" && value === "true"),
     analyzerWorkFunctionEv,
-    passEnergyEv: analyzerMode.toUpperCase() === "FAT" ? passEnergyOrRatio : null,
+    passEnergyEv: isPassEnergy ? passEnergyOrRatio : null,
     dwellS,
     sweeps,
     comments: [...experiment.comments, ...comments],
-    metadata: Object.fromEntries(metadata.filter(([, value]) => value !== "")),
-    columns: Object.fromEntries(labels.map((label, i) => [label, ascending(ordinates[i])])),
+    metadata: withStated(metadata.filter(([, value]) => value !== ""), stated),
+    columns: Object.fromEntries(further),
   };
+}
+
+/** What comments state goes before items of the same key: the writer puts there what an item cannot hold exactly. */
+function withStated(items: readonly Entry[], stated: readonly Entry[]): Record<string, string> {
+  const keys = new Set(stated.map(([key]) => key));
+  return metadataOf([
+    ...items.filter(([key]) => !keys.has(key)),
+    ...stated.filter(([key]) => key !== "as_recorded"),
+  ]);
+}
+
+/**
+ * Energies of a REGULAR scan: start plus multiples of the increment, rounded to the decimals that these are written
+ * with, which takes the rounding of binary fractions off.
+ *
+ * @param startEv First energy, eV.
+ * @param incrementEv Step, eV, not 0.
+ * @param pointCount Number of energies.
+ * @returns Energies, eV.
+ */
+export function regularEnergiesEv(startEv: number, incrementEv: number, pointCount: number): Float64Array {
+  const decimals = Math.max(decimalsOf(startEv), decimalsOf(incrementEv));
+  const scale = 10 ** decimals;
+  // Beyond these limits the scaled number has no room for its decimals.
+  const isExact = decimals <= 15 &&
+    Math.max(Math.abs(startEv), Math.abs(startEv + pointCount * incrementEv)) * scale < 2 ** 52;
+  return Float64Array.from({ length: pointCount }, (_, i) => {
+    const energyEv = startEv + i * incrementEv;
+    return isExact ? Math.round(energyEv * scale) / scale + 0 : energyEv;
+  });
+}
+
+function decimalsOf(value: number): number {
+  const [, fraction = "", exponent = "0"] = /^-?\d+(?:\.(\d+))?(?:e([+-]\d+))?$/.exec(String(value)) ?? [];
+  return Math.max(0, fraction.length - Number(exponent));
 }
 
 function keepDate(items: ItemReader, keep: (key: string, value: string) => void): void {
@@ -258,6 +340,9 @@ function readOrdinates(items: ItemReader, labels: readonly string[]): Float64Arr
       `it must be a multiple of the ${labels.length} corresponding variables`,
       ordinateCount,
     );
+  }
+  if (ordinateCount / labels.length > MAX_POINTS) {
+    throw items.error(item, `there must be at most ${MAX_POINTS} points`, ordinateCount / labels.length);
   }
   const stated = labels.map((
     label,

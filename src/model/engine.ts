@@ -69,10 +69,16 @@ export interface FastEngineData {
  * @returns Plain data.
  */
 export function engineData(resolved: ResolvedScenario): EngineData {
-  return resolved.fast === null ? pairEngine(resolved) : fastEngine(resolved, resolved.fast);
+  return resolved.fast === null ? pairEngineData(resolved) : fastEngine(resolved, resolved.fast);
 }
 
-function pairEngine(resolved: ResolvedScenario): PairEngineData {
+/**
+ * Builds the tables of slow electrons.
+ *
+ * @param resolved A scenario in the ultraviolet.
+ * @returns Plain data.
+ */
+export function pairEngineData(resolved: ResolvedScenario): PairEngineData {
   const { thermalEnergyEv, layers } = resolved;
   const grid = energyGrid(resolved.energyStepEv, {
     photonEnergyEv: Math.max(

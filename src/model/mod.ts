@@ -10,6 +10,7 @@ export {
   engineFrom,
   type FastEngineData,
   type PairEngineData,
+  pairEngineData,
 } from "./engine.ts";
 export { countSpectrum, type ExpectedSpectrum, expectedSpectrum } from "./expected.ts";
 export type { ExpectedLevel } from "./fast.ts";

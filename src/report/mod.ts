@@ -10,4 +10,12 @@ export {
   spectrumFigure,
   type SpectrumFigureInput,
 } from "./spectrum_figure.ts";
+export { type FigureSeries, seriesFigure, type SeriesFigureInput } from "./series_figure.ts";
 export { formatEstimate } from "./values.ts";
+export {
+  axisTitle,
+  type FigurePoint,
+  sweepFigure,
+  type SweepFigureAxis,
+  type SweepFigureInput,
+} from "./sweep_figure.ts";

@@ -2,12 +2,13 @@ const MASK = (1n << 64n) - 1n;
 const GOLDEN_GAMMA = 0x9e3779b97f4a7c15n;
 
 /** What a stream of random numbers is for; each purpose draws from streams of its own. */
-export type StreamPurpose = "transport" | "counting" | "replicate";
+export type StreamPurpose = "transport" | "counting" | "replicate" | "sampling";
 
 const PURPOSE_NUMBER: Readonly<Record<StreamPurpose, bigint>> = {
   transport: 1n,
   counting: 2n,
   replicate: 3n,
+  sampling: 4n,
 };
 
 /**

@@ -7,6 +7,7 @@ import {
   type Tally,
   TallyAccumulator,
 } from "../transport/mod.ts";
+import { moduleBeside } from "./module_url.ts";
 import type { FromWorker, ToWorker } from "./worker.ts";
 
 /** Batches handed to a worker at a time: some milliseconds of work, so that stopping and progress feel immediate. */
@@ -38,13 +39,14 @@ export function batchesFor(histories: number): number {
  * @param data Engine.
  * @param seed Seed.
  * @param batches Number of batches.
+ * @param stopped Asked before each batch; `true` ends the run early. Default: never.
  * @returns The tally, identical to that of {@link runHistories}.
  */
-export function runSeries(data: EngineData, seed: number, batches: number): Tally {
+export function runSeries(data: EngineData, seed: number, batches: number, stopped?: () => boolean): Tally {
   const run = engineFrom(data);
   const count = data.tallySize;
   const sums = new TallyAccumulator(count);
-  for (let batch = 0; batch < batches; batch++) {
+  for (let batch = 0; batch < batches && !stopped?.(); batch++) {
     const tally = emptyBatchTally(count);
     run?.(seed, batch, tally);
     sums.add(batch, tally);
@@ -68,51 +70,103 @@ export async function runHistories(
   batches: number,
   options: RunOptions,
 ): Promise<Tally> {
-  const sums = new TallyAccumulator(data.tallySize);
-  if (isIdle(data)) return runSeries(data, seed, batches);
-  const stop = new Int32Array(new SharedArrayBuffer(4));
-  const requestStop = (): void => {
-    Atomics.store(stop, 0, 1);
-  };
-  options.signal?.addEventListener("abort", requestStop);
-  if (options.signal?.aborted) requestStop();
-  let next = 0;
-  const tasks = Math.ceil(batches / BATCHES_PER_TASK);
-  const workers = Array.from({ length: Math.min(options.workers, tasks) }, () => new Worker(workerUrl()));
-  try {
-    await Promise.all(workers.map((worker) =>
-      new Promise<void>((finish, fail) => {
-        const send = (message: ToWorker): void => worker.postMessage(message);
-        const nextTask = (): void => {
-          if (next >= batches || Atomics.load(stop, 0) === 1) return finish();
-          const from = next;
-          next = Math.min(batches, next + BATCHES_PER_TASK);
-          send({ kind: "run", from, to: next });
-        };
-        worker.on("error", fail);
-        worker.on("message", (message: FromWorker) => {
-          if (message.kind === "failed") return fail(new Error(message.message));
-          if (message.kind === "idle") return nextTask();
-          sums.add(message.batch, message.tally as BatchTally);
-          options.onProgress?.(sums.batches, batches);
-        });
-        send({ kind: "setup", data, seed, stop });
-      })
-    ));
-  } finally {
-    requestStop();
-    options.signal?.removeEventListener("abort", requestStop);
-    await Promise.all(workers.map((worker) => worker.terminate()));
-  }
-  return sums.result();
+  await using pool = new HistoryPool(data, seed, options.workers);
+  return await pool.runTo(batches, options);
 }
 
-/** Nothing to run: no photon lifts an electron above the Fermi level. */
-function isIdle(data: EngineData): boolean {
+/** Worker threads that hold an engine and go on from one number of batches to the next. */
+export class HistoryPool {
+  readonly #data: EngineData;
+  readonly #seed: number;
+  readonly #mostWorkers: number;
+  readonly #sums: TallyAccumulator;
+  readonly #stop = new Int32Array(new SharedArrayBuffer(4));
+  readonly #workers: Worker[] = [];
+
+  /**
+   * Prepares the sums; threads start when there is work for them.
+   *
+   * @param data Engine; a copy goes to each worker.
+   * @param seed Seed.
+   * @param workers Most threads, a whole number >= 1.
+   * @param start Sums of earlier batches of the same engine and seed. Default: none.
+   */
+  constructor(data: EngineData, seed: number, workers: number, start?: Tally) {
+    this.#data = data;
+    this.#seed = seed;
+    this.#mostWorkers = workers;
+    this.#sums = new TallyAccumulator(data.tallySize, start);
+  }
+
+  /**
+   * Goes on until there are so many batches.
+   *
+   * @param batches Batches from number 0 on, earlier ones included.
+   * @param options Stop signal, progress. After an abort the pool can only be disposed of.
+   * @returns The tally of batches 0..batches - 1, or after an abort of the unbroken series done so far.
+   * @throws {Error} What a worker threw.
+   */
+  async runTo(batches: number, options: Omit<RunOptions, "workers"> = {}): Promise<Tally> {
+    const sums = this.#sums;
+    let next = sums.batches;
+    if (isIdle(this.#data)) {
+      for (; next < batches; next++) sums.add(next, emptyBatchTally(this.#data.tallySize));
+    }
+    this.#startThreads(Math.ceil((batches - next) / BATCHES_PER_TASK));
+    const requestStop = (): void => void Atomics.store(this.#stop, 0, 1);
+    options.signal?.addEventListener("abort", requestStop);
+    if (options.signal?.aborted) requestStop();
+    try {
+      await Promise.all(this.#workers.map((worker) =>
+        new Promise<void>((finish, fail) => {
+          const nextTask = (): void => {
+            if (next >= batches || Atomics.load(this.#stop, 0) === 1) return finish();
+            const from = next;
+            next = Math.min(batches, next + BATCHES_PER_TASK);
+            tell(worker, { kind: "run", from, to: next });
+          };
+          worker.removeAllListeners("error").removeAllListeners("message");
+          worker.on("error", fail);
+          worker.on("message", (message: FromWorker) => {
+            if (message.kind === "failed") return fail(new Error(message.message));
+            if (message.kind === "idle") return nextTask();
+            sums.add(message.batch, message.tally as BatchTally);
+            options.onProgress?.(sums.batches, batches);
+          });
+          nextTask();
+        })
+      ));
+    } finally {
+      options.signal?.removeEventListener("abort", requestStop);
+    }
+    return sums.result();
+  }
+
+  #startThreads(tasks: number): void {
+    while (this.#workers.length < Math.min(this.#mostWorkers, tasks)) {
+      const worker = new Worker(moduleBeside(import.meta.url, "worker"));
+      this.#workers.push(worker);
+      tell(worker, { kind: "setup", data: this.#data, seed: this.#seed, stop: this.#stop });
+    }
+  }
+
+  /** Ends the threads. */
+  async [Symbol.asyncDispose](): Promise<void> {
+    Atomics.store(this.#stop, 0, 1);
+    await Promise.all(this.#workers.map((worker) => worker.terminate()));
+  }
+}
+
+/**
+ * Nothing to run: no photon lifts an electron above the Fermi level.
+ *
+ * @param data Engine.
+ * @returns `true` when the tally stays empty.
+ */
+export function isIdle(data: EngineData): boolean {
   return data.kind === "pair" && data.source === null;
 }
 
-/** The worker beside this file, under the extension this file itself has (`.ts` here, `.js` once packed for npm). */
-function workerUrl(): URL {
-  return new URL(import.meta.url.endsWith(".ts") ? "./worker.ts" : "./worker.js", import.meta.url);
+function tell(worker: Worker, message: ToWorker): void {
+  worker.postMessage(message);
 }

@@ -1,6 +1,10 @@
 /**
- * Room `run`: spreads histories over worker threads. The sums are the same to the last bit on any number of workers.
+ * Room `run`: spreads histories over worker threads, and the points of a sweep. The results are the same to the last bit on
+ * any number of workers.
  *
  * @module
  */
-export { batchesFor, runHistories, type RunOptions, runSeries } from "./histories.ts";
+export { batchesFor, HistoryPool, isIdle, runHistories, type RunOptions, runSeries } from "./histories.ts";
+export { type SpectrumSummary, summarize, worstRelativeStandardError } from "./summary.ts";
+export { type PointResult, PointRunner, type PointSpectrum, round9 } from "./point.ts";
+export { runSweep, type SweepOptions, type SweepResult } from "./sweep.ts";

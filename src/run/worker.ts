@@ -34,13 +34,14 @@ parentPort?.on("message", (message: ToWorker) => {
       tallySize = message.data.tallySize;
       seed = message.seed;
       stop = message.stop;
-    } else if (run && stop) {
-      for (let batch = message.from; batch < message.to && Atomics.load(stop, 0) === 0; batch++) {
-        const tally = emptyBatchTally(tallySize);
-        run(seed, batch, tally);
-        const buffers = Object.values(tally).map((array: Float64Array) => array.buffer as ArrayBuffer);
-        post({ kind: "batch", batch, tally }, buffers);
-      }
+      return;
+    }
+    if (!run || !stop) throw new Error("The worker has no engine to run");
+    for (let batch = message.from; batch < message.to && Atomics.load(stop, 0) === 0; batch++) {
+      const tally = emptyBatchTally(tallySize);
+      run(seed, batch, tally);
+      const buffers = Object.values(tally).map((array: Float64Array) => array.buffer as ArrayBuffer);
+      post({ kind: "batch", batch, tally }, buffers);
     }
     post({ kind: "idle" });
   } catch (error) {

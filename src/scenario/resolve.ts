@@ -180,14 +180,6 @@ export function resolveScenario(scenario: Scenario, tables: UserTables = {}): Re
       ),
     });
   }
-  for (const [key, table] of USER_TABLES) {
-    if (sample[key] !== null && tables[table] === undefined) {
-      problems.push({
-        place: `/sample/${key}`,
-        message: cannot("use scenario", "the file must be readable", sample[key]),
-      });
-    }
-  }
   const materials = [...films, substrate].flatMap((chosen) => chosen ?? []);
   const thicknesses = [...sample.layers.map((layer) => layer.thicknessNm), Infinity];
   const highest = (light?.groups ?? []).flatMap((group) => group.photons).reduce(
@@ -197,13 +189,21 @@ export function resolveScenario(scenario: Scenario, tables: UserTables = {}): Re
   const isFast = highest > HIGHEST_PAIR_EV;
   const absorbed = light && !isFast && materials.length === thicknesses.length
     ? light.groups.map((group) =>
-      attempt("/light", () =>
+      attempt(LIGHT_PLACES[scenario.light.kind], () =>
         absorbedLine(group, materials, thicknesses, {
           incidenceAngleDeg: geometry.incidenceAngleDeg,
           polarization: scenario.light.polarization,
         }))
     )
     : [];
+  for (const [key, table] of USER_TABLES) {
+    if (sample[key] !== null && tables[table] === undefined) {
+      problems.push({
+        place: `/sample/${key}`,
+        message: cannot("use scenario", "the file must be readable", sample[key]),
+      });
+    }
+  }
   if (!isFast && highest / scenario.simulation.energyStepEv > MOST_BINS) {
     problems.push({
       place: "/simulation/energyStepEv",
@@ -312,6 +312,17 @@ export function resolveScenario(scenario: Scenario, tables: UserTables = {}): Re
     warnings: [...light.warnings, ...left, ...(fast?.warnings ?? []), ...foresee(resolved)],
   };
 }
+
+/** Where a source says which photon energies it has. */
+const LIGHT_PLACES: Readonly<Record<Scenario["light"]["kind"], string>> = {
+  lamp: "/light/lamp",
+  anode: "/light/anode",
+  monochromatedAluminum: "/light/kind",
+  band: "/light/centerEv",
+  table: "/light/file",
+  thermal: "/light/highEv",
+  laser: "/light/photonEnergyEv",
+};
 
 const USER_TABLES = [
   ["densityOfStatesFile", "densityOfStates"],

@@ -18,7 +18,7 @@ export interface PatchSettings {
 
 /** What makes a real surface differ from a flat uniform one. */
 export interface SurfaceSettings {
-  /** Parts with different work functions; empty for a uniform surface. Default: none. */
+  /** Parts with different work functions; empty for a uniform surface. Default: empty. */
   readonly patches: readonly PatchSettings[];
   /**
    * `strong`: the extraction field reaches between the patches, each shows its own cutoff. `weak`: electrons from patches
@@ -75,7 +75,7 @@ export interface SampleSettings {
   readonly densityOfStatesFile: string | null;
   /** CSV file with columns `energy_ev,length_nm` (energy above the Fermi level), beside the scenario. Default: null. */
   readonly meanFreePathFile: string | null;
-  /** Films from the surface down; the uppermost sets the barrier. Default: none. */
+  /** Films from the surface down; the uppermost sets the barrier. Default: empty. */
   readonly layers: readonly LayerSettings[];
   /** Patches, roughness, fields, dipoles. */
   readonly surface: SurfaceSettings;

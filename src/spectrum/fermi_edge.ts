@@ -51,6 +51,8 @@ export function broadenedFermiEdge(
     (_, i) => normalPdf(((i - half) * step) / sigmaEv),
   );
   const norm = weights.reduce((sum, weight) => sum + weight, 0);
+  // exp((E - s)/kT) of all nodes from one exponential; at most e^24 e^(2 x 6.5 sigma/kT), below e^300 here.
+  const factors = weights.map((_, i) => Math.exp((-(i - half) * step) / thermalEnergyEv));
   const reach = REACH_THERMAL * thermalEnergyEv + REACH_SIGMAS * sigmaEv;
   return (energyEv, out) => {
     if (Math.abs(energyEv) > reach) {
@@ -59,12 +61,13 @@ export function broadenedFermiEdge(
       out.curveEv2 = energyEv < 0 ? energyEv * energyEv + sigmaEv * sigmaEv : 0;
       return;
     }
+    const boltzmann = Math.exp(energyEv / thermalEnergyEv);
     let occupation = 0;
     let slope = 0;
     let curve = 0;
     for (let i = 0; i < weights.length; i++) {
       const shifted = energyEv - (i - half) * step;
-      const filled = weights[i] / (1 + Math.exp(shifted / thermalEnergyEv));
+      const filled = weights[i] / (1 + boltzmann * factors[i]);
       occupation += filled;
       slope += filled * shifted;
       curve += filled * shifted * shifted;

@@ -1,5 +1,8 @@
 import { fastErfcx, normalCdf, normalPdf } from "../math/mod.ts";
 
+/** Standard deviations below a step where less than 1e-18 of it is left. */
+const NOTHING_BELOW = -9;
+
 /**
  * Step with an exponentially decaying top, `exp(-x / decay)` for x > 0, folded with a Gaussian: the exponentially
  * modified Gaussian `1/2 exp(s^2/2d^2 - x/d) erfc((s/d - x/s)/sqrt 2)` without overflow (E. Grushka, Anal. Chem. 44, 1733
@@ -11,6 +14,7 @@ import { fastErfcx, normalCdf, normalPdf } from "../math/mod.ts";
  * @returns Height, 0..1.
  */
 export function broadenedTopStep(x: number, sigmaEv: number, decayEv: number): number {
+  if (x < NOTHING_BELOW * sigmaEv) return 0;
   const ratio = sigmaEv / decayEv;
   const argument = (ratio - x / sigmaEv) * Math.SQRT1_2;
   return argument > 0

@@ -25,6 +25,7 @@ const THERMAL_REACH = 16;
  *
  * @param widestStepEv Widest bin allowed, eV, > 0.
  * @param limits Highest photon energy and work function, eV, and thermal energy kT, eV, >= 0.
+ * @throws {RangeError} If the step is not > 0.
  * @returns The grid; without room for an electron above the vacuum level `vacuumBin >= count`.
  */
 export function energyGrid(
@@ -35,6 +36,11 @@ export function energyGrid(
     readonly thermalEnergyEv: number;
   },
 ): EnergyGrid {
+  if (!(widestStepEv > 0)) {
+    throw new RangeError(
+      `Cannot make an energy grid as widestStepEv must be > 0 eV: current value is ${widestStepEv} eV`,
+    );
+  }
   const vacuumBin = Math.ceil(limits.workFunctionEv / widestStepEv - 1e-9);
   const stepEv = vacuumBin > 0 ? limits.workFunctionEv / vacuumBin : widestStepEv;
   const thermalBins = Math.ceil((THERMAL_REACH * limits.thermalEnergyEv) / stepEv);

@@ -24,12 +24,16 @@ export class TallyAccumulator {
   #next = 0;
 
   /**
-   * Starts with nothing.
+   * Starts with nothing, or goes on from earlier sums as if they had been added here.
    *
    * @param count Energy bins.
+   * @param start Sums of batches 0..start.batches - 1; not changed. Default: none.
    */
-  constructor(count: number) {
+  constructor(count: number, start?: Tally) {
     this.#count = count;
+    if (start === undefined) return;
+    this.#next = start.batches;
+    this.#groups.push(...start.groups.map((group) => structuredClone(group)));
   }
 
   /** Batches added so far, without a gap from number 0 on. */

@@ -5,7 +5,7 @@ import { countSpectrum, engineData, type ExpectedSpectrum, expectedSpectrum } fr
 import { runSeries } from "../../src/run/mod.ts";
 import { parseScenario, type ResolvedScenario, resolveScenario } from "../../src/scenario/mod.ts";
 
-const BATCHES = 200;
+const BATCHES = 500;
 
 interface Simulated {
   readonly resolved: ResolvedScenario;

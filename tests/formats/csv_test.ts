@@ -10,28 +10,33 @@ Deno.test("readSpectrumCsv() fills fields from metadata lines when keys are know
   const head =
     "# Region: cutoff\n# photon_energy_ev: 21.22\n# BIAS_V: -9\n# analyzer_work_function_ev: 4.4\n" +
     "# pass_energy_ev: 5\n# dwell_s: 0.1\n# sweeps: 2\n# sample: Au: foil\n# a plain comment at 10:30\n#\n";
-  const [region] = readSpectrumCsv(head + GOOD + "# later: yes\n", "a.csv").regions;
-  assert.deepEqual({ ...region, metadata: Object.keys(region.metadata).length }, {
+  const tail = '# later: yes\n# Species: Au\n## verbatim: no key\n# "a: b": c\n';
+  const [region] = readSpectrumCsv(head + GOOD + tail, "a.csv").regions;
+  assert.deepEqual(region, {
     label: "cutoff",
-    species: "",
+    species: "Au",
     energyKind: "kinetic",
     energiesEv: Float64Array.of(5, 5.1, 5.2, 5.3, 5.4),
     counts: Float64Array.of(3, 4, 9, 8, 7),
     photonEnergyEv: 21.22,
     biasV: -9,
+    asRecorded: true,
     analyzerWorkFunctionEv: 4.4,
     passEnergyEv: 5,
     dwellS: 0.1,
     sweeps: 2,
-    comments: ["a plain comment at 10:30"],
-    metadata: 9,
-    columns: {
-      kinetic_energy_ev: Float64Array.of(5, 5.1, 5.2, 5.3, 5.4),
-      counts: Float64Array.of(3, 4, 9, 8, 7),
-    },
+    comments: ["a plain comment at 10:30", "verbatim: no key"],
+    metadata: { sample: "Au: foil", later: "yes", "a: b": "c" },
+    columns: {},
   });
-  assert.equal(region.metadata.sample, "Au: foil");
-  assert.equal(region.metadata.later, "yes");
+});
+
+Deno.test("readSpectrumCsv() takes a bias for one of energies as recorded unless as_recorded says otherwise", () => {
+  const asRecorded = (head: string) => readSpectrumCsv(head + GOOD, "a.csv").regions[0].asRecorded;
+  assert.deepEqual(
+    ["", "# bias_v: -9\n", "# bias_v: 9\n# as_recorded: false\n", "# as_recorded: true\n"].map(asRecorded),
+    [false, true, false, true],
+  );
 });
 
 Deno.test("readSpectrumCsv() gives null when the file says nothing", () => {
@@ -74,10 +79,13 @@ Deno.test("readSpectrumCsv() reverses every column when energies descend", () =>
   assert.deepEqual([...region.columns.mesh], [50, 40, 30, 20, 10]);
 });
 
-Deno.test("readSpectrumCsv() keeps a further column only when all its cells are numbers", () => {
+Deno.test("readSpectrumCsv() keeps a further column only when all its cells are numbers or empty", () => {
   const rows = ROWS.trimEnd().split("\n").map((row, i) => `${row},${i},ok,${i === 2 ? "" : i}`).join("\n");
   const [region] = readSpectrumCsv("kinetic_energy_ev,counts,mesh,remark,partly\n" + rows, "a.csv").regions;
-  assert.deepEqual(Object.keys(region.columns), ["kinetic_energy_ev", "counts", "mesh"]);
+  assert.deepEqual(region.columns, {
+    mesh: Float64Array.of(0, 1, 2, 3, 4),
+    partly: Float64Array.of(0, 1, NaN, 3, 4),
+  });
 });
 
 Deno.test("readSpectrumCsv() takes the named columns when --columns gives them", () => {
@@ -90,13 +98,20 @@ Deno.test("readSpectrumCsv() takes the named columns when --columns gives them",
     "binding",
     "unknown",
   ]);
+  assert.deepEqual(kindFor("x").metadata, { "abscissa label": "x", "counts label": "signal" });
+  assert.deepEqual(Object.keys(kindFor("x").columns), ["I0"]);
+});
+
+Deno.test("readSpectrumCsv() leaves the kind of axis open when the energy column is energy_ev", () => {
+  const [region] = readSpectrumCsv(GOOD.replace("kinetic_", ""), "a.csv").regions;
+  assert.deepEqual([region.energyKind, region.metadata], ["unknown", {}]);
 });
 
 const H = "kinetic_energy_ev,counts\n";
 const row = (text: string) => H + "5.0,3\n" + text + "\n5.2,9\n5.3,8\n5.4,7\n";
 const BROKEN: [what: string, text: string, parts: string[], options?: CsvOptions][] = [
   ["no header", ROWS, [
-    "kinetic_energy_ev or binding_energy_ev, and counts",
+    "kinetic_energy_ev or binding_energy_ev or energy_ev, and counts",
     "--columns",
     '"5.0,3"',
     "a.csv:1)",
@@ -155,6 +170,11 @@ const BROKEN: [what: string, text: string, parts: string[], options?: CsvOptions
   ]],
   ["an empty key", "# dwell_s:\n" + GOOD, ['read "dwell_s"', "must not be empty", "a.csv:1)"]],
   ["zero photon energy", "# photon_energy_ev: 0\n" + GOOD, ["must be > 0 eV", "a.csv:1)"]],
+  ["a strange statement", "# as_recorded: maybe\n" + GOOD, [
+    "it must be true or false",
+    '"maybe"',
+    "a.csv:1)",
+  ]],
   ["half a sweep", "# sweeps: 1.5\n" + GOOD, ["must be a whole number >= 1", "a.csv:1)"]],
   ["a key twice", "# bias_v: 1\n# Bias_V: 2\n" + GOOD, ["every key must be given once", "a.csv:2)"]],
   ["an unknown energy column", GOOD, [
@@ -264,7 +284,7 @@ Deno.test("readSpectrumCsv() gives back what writeSpectrumCsv() wrote when anyth
       const [region] = readSpectrumCsv(writeSpectrumCsv(metadata, columns), "a.csv").regions;
       assert.deepEqual(region.energiesEv, energies);
       assert.deepEqual(region.counts, counts);
-      assert.deepEqual(region.columns, Object.fromEntries(columns.map((c) => [c.name, c.values])));
+      assert.deepEqual(region.columns, Object.fromEntries(names.map((name) => [name, others])));
       assert.deepEqual(region.metadata, Object.fromEntries(metadata));
     }),
     { seed: 20250114, numRuns: 200 },

@@ -15,7 +15,7 @@ Deno.test("readIso14976() reads every block when there are several", () => {
   assert.deepEqual([...survey.energiesEv], [100, 100.5, 101, 101.5, 102, 102.5]);
   assert.deepEqual([...survey.counts], [40, 55, 71, 12, 9, 3]);
   assert.deepEqual([...cutoff.columns.Transmission], [2, 2.125, 2.25, 2.375, 2.5]);
-  assert.deepEqual(Object.keys(cutoff.columns), ["Intensity", "Transmission"]);
+  assert.deepEqual(Object.keys(cutoff.columns), ["Transmission"]);
   assert.deepEqual(
     [
       cutoff.photonEnergyEv,
@@ -27,7 +27,14 @@ Deno.test("readIso14976() reads every block when there are several", () => {
     ],
     [21.2, -9.5, -4.41, 5, 0.2, 3],
   );
-  assert.deepEqual(cutoff.comments, ["all numbers invented", "sputtered before", ""]);
+  assert.deepEqual(cutoff.comments, [
+    "all numbers invented",
+    "later still",
+    "sputtered before",
+    "",
+    "later",
+  ]);
+  assert.equal(cutoff.asRecorded, false);
 });
 
 Deno.test("readIso14976() keeps items as metadata when the file knows them", () => {
@@ -129,6 +136,7 @@ const BROKEN: [item: string, line: string, rule: string][] = [
   ["number of blocks", "0", "there must be at least one block"],
   ["technique", "SIMS", "others are not supported yet"],
   ["source energy", "-21.2", "it must be > 0, or 0 where it is not known"],
+  ["number of scans", "2.5", "it must be a whole number"],
   ["signal collection time", "-1", "it must be > 0, or 0 where it is not known"],
   ["target bias", "-9,5", "decimal commas must become points"],
   ["target bias", "", "it must not be empty"],

@@ -9,18 +9,37 @@ const MAY_IMPORT: Readonly<Record<string, readonly string[]>> = {
   math: [],
   rng: [],
   data: [],
-  sample: [],
+  sample: ["math"],
   transport: ["math", "rng"],
   instrument: ["math", "rng"],
   spectrum: ["math"],
+  light: ["data"],
+  losses: ["math", "rng"],
   fit: ["math"],
-  edges: ["data", "fit", "spectrum"],
+  edges: ["data", "fit", "rng", "spectrum"],
+  emission: ["data"],
+  series: ["data", "emission", "fit", "math"],
+  lines: ["data", "fit", "light", "losses", "math", "series", "spectrum"],
   formats: [],
   scenario: ["data", "instrument", "light", "losses", "sample"],
   model: ["math", "rng", "sample", "spectrum", "transport", "instrument", "scenario"],
-  run: ["model", "transport"],
+  sweep: ["rng", "scenario"],
+  run: ["data", "edges", "model", "scenario", "sweep", "transport"],
   report: [],
-  cli: ["data", "edges", "formats", "model", "report", "run", "scenario", "transport"],
+  cli: [
+    "data",
+    "edges",
+    "formats",
+    "lines",
+    "model",
+    "report",
+    "run",
+    "scenario",
+    "series",
+    "sweep",
+    "transport",
+    "light",
+  ],
 };
 
 /** Rooms that must also run in a browser page. */
@@ -37,7 +56,7 @@ const PURE = [
   "edges",
   "formats",
 ]
-  .concat("scenario", "model");
+  .concat("scenario", "model", "sweep", "light", "losses", "emission", "series", "lines");
 
 interface SourceFile {
   readonly room: string;

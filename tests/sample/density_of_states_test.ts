@@ -3,7 +3,7 @@ import { type BandModel, densityOfStates } from "../../src/sample/mod.ts";
 import { assertClose } from "../support/assert_close.ts";
 import { integrate } from "../support/integrate.ts";
 
-const FREE: BandModel = { bandBottomBelowFermiEv: 9, spElectrons: 1.5, lobes: [] };
+const FREE: BandModel = { bandBottomBelowFermiEv: 9, spElectrons: 1.5, lobes: [], gap: null };
 const D_BAND = { centerBindingEv: 4, fwhmEv: 1.6, electrons: 6 };
 
 Deno.test("densityOfStates() of free electrons is 3 n/(2 E_F) at the Fermi level and rises as a square root", () => {

@@ -42,12 +42,15 @@ function defaults(schema: Schema): string[] {
 Deno.test("the documented defaults of a scenario are those of the schema", async () => {
   const text = await Deno.readTextFile(new URL("../../src/scenario/types.ts", import.meta.url));
   // The first word after "Default:", without the back quotes of names and the full stop of the sentence.
-  const documented = [...text.matchAll(/\/\*\* .*Default: `?([^\s`]+).* \*\/\s+readonly (\w+)\??: /g)].map(
+  const documented = [
+    ...text.matchAll(/Default:\s+(?:\* )?`?([^\s`]+)(?:(?!\*\/)[^])*\*\/\s+readonly (\w+)\??: /g),
+  ].map(
     ([, word, key]) => {
       const value = word.replace(/\.$/, "");
       return `${key} = ${value === "empty" ? "" : /^\d/.test(value) ? Number(value) : value}`;
     },
   );
   assert.ok(documented.length >= 18);
-  assert.deepEqual(documented.toSorted(), defaults(scenarioJsonSchema() as Schema).toSorted());
+  const unique = (lines: readonly string[]): string[] => [...new Set(lines)].toSorted();
+  assert.deepEqual(unique(documented), unique(defaults(scenarioJsonSchema() as Schema)));
 });

@@ -49,12 +49,13 @@ Deno.test("applyOverrides() refuses what is no PATH=VALUE and paths through plai
     })),
     {
       place: "--set biasV.x",
-      message: 'Cannot apply override as every key but the last must be an object: current value is "-9"',
+      message:
+        'Cannot apply override as every key but the last must be an object, or an element of an array that is there: current value is "-9"',
     },
     {
       place: "--set sample.material.x.y",
       message: String
-        .raw`Cannot apply override as every key but the last must be an object: current value is "\"Au\""`,
+        .raw`Cannot apply override as every key but the last must be an object, or an element of an array that is there: current value is "\"Au\""`,
     },
   ]);
 });

@@ -14,6 +14,8 @@ const refused = (text: string, overrides: readonly string[] = []): string[] =>
     `${place}: ${message.replace(/^Cannot (read|use) scenario as /, "")}`
   );
 
+const KINDS = "lamp, anode, monochromatedAluminum, band, table, thermal, laser";
+
 Deno.test("parseScenario() fills in the defaults", () => {
   const scenario = parse(SCENARIO_TEXT);
   assert.equal(scenario.note, "");
@@ -26,15 +28,35 @@ Deno.test("parseScenario() fills in the defaults", () => {
     transportMeanFreePathNm: null,
     densityOfStatesFile: null,
     meanFreePathFile: null,
+    layers: [],
+    surface: {
+      patches: [],
+      patchField: "strong",
+      workFunctionSpreadEv: 0,
+      facetTiltDeg: 0,
+      extractionFieldVPerM: 0,
+      dipoleDensityPerNm2: 0,
+      dipoleMomentDebye: 0,
+    },
+    valenceMaximumBelowFermiEv: null,
+    bandBending: null,
+    charging: { shiftEv: 0, fwhmEv: 0 },
+    fastMeanFreePath: "TPP-2M",
   });
-  assert.deepEqual(scenario.light, { kind: "lamp", lamp: "He I", satellites: true, photonFluxPerS: 5e9 });
+  assert.deepEqual(scenario.light, {
+    kind: "lamp",
+    lamp: "He I",
+    satellites: true,
+    photonFluxPerS: 5e9,
+    polarization: "none",
+  });
   assert.equal(scenario.acquisition.deadTimeS, 0);
   assert.equal(scenario.simulation.energyStepEv, 0.02);
   const short = parse(
     SCENARIO_TEXT.replace(/"(geometry|simulation)": \{.*\},?\n/g, "").replace(/,\s*\}$/, "}"),
   );
   assert.deepEqual(short.geometry, { incidenceAngleDeg: 45, emissionAngleDeg: 0 });
-  assert.deepEqual(short.simulation, { histories: 20_000_000, seed: 1, energyStepEv: 0.02 });
+  assert.deepEqual(short.simulation, { histories: 20_000_000, seed: 1, energyStepEv: 0.02, maxLossEv: 100 });
 });
 
 Deno.test("parseScenario() allows comments and trailing commas and changes nothing for them", () => {
@@ -107,7 +129,7 @@ Deno.test.each([
     "light.lamp=HeI",
     `/light/lamp: lamp must be one of ${LAMP_NAMES.join(", ")} (did you mean He I?): current value is "HeI"`,
   ],
-  ["light.kind=laser", '/light/kind: kind must be one of lamp, band: current value is "laser"'],
+  ["light.kind=sun", `/light/kind: kind must be one of ${KINDS}: current value is "sun"`],
   ["light=lamp", '/light: light must be an object: current value is "lamp"'],
   [
     "sample.barrier=Quantum",
@@ -135,10 +157,10 @@ Deno.test.each([
 Deno.test("parseScenario() asks for the keys of the kind of light that was chosen", () => {
   assert.deepEqual(refused(SCENARIO_TEXT, ["light.kind=band"]), [
     '/light/centerEv: centerEv must be given: current value is "nothing"',
-    '/light/lamp: every key must be known (known here: kind, centerEv, fwhmEv, photonFluxPerS): current value is "lamp"',
+    '/light/lamp: every key must be known (known here: kind, centerEv, fwhmEv, photonFluxPerS, polarization): current value is "lamp"',
   ]);
   assert.deepEqual(refused(SCENARIO_TEXT.replace('"kind": "lamp", ', "")), [
-    '/light/kind: kind must be one of lamp, band: current value is "nothing"',
+    `/light/kind: kind must be one of ${KINDS}: current value is "nothing"`,
   ]);
 });
 

@@ -1,29 +1,46 @@
-import type { ResolvedScenario } from "../../src/scenario/mod.ts";
+import type { ResolvedLayer, ResolvedScenario } from "../../src/scenario/mod.ts";
 
 /** Light of one photon energy absorbed at a mean depth of 10 nm. */
 export function line(energyEv: number): ResolvedScenario["lines"][number] {
-  return { name: "line", energyEv, fwhmEv: 0, absorbedWeight: 1, absorptionDepthNm: 10 };
+  return {
+    name: "line",
+    energyEv,
+    photons: [{ energyEv, weight: 1 }],
+    absorbedWeight: 1,
+    absorbed: [{ share: 1, depthNm: 10 }],
+  };
 }
 
 /** Numbers of {@link flatMetal} that a test may change; the others follow from them. */
-export type FlatMetalChanges = Partial<
-  Omit<ResolvedScenario, "lines" | "thermalEnergyEv" | "kineticEnergyShiftEv" | "accelerationEv">
->;
+export type FlatMetalChanges =
+  & Partial<
+    Omit<ResolvedScenario, "lines" | "thermalEnergyEv" | "kineticEnergyShiftEv" | "layers" | "surface">
+  >
+  & Partial<Omit<ResolvedLayer, "thicknessNm" | "material">>;
 
 /**
  * An ideal metal for exact limits: the same number of states at every energy, an inelastic mean free path of 1 nm at
  * every energy, T = 0, and an analyzer that takes every direction, has no dead time and no dark counts.
  */
 export function flatMetal(changes: FlatMetalChanges = {}): ResolvedScenario {
+  const { states, bandBottomBelowFermiEv, meanFreePath, transportMeanFreePathNm, ...others } = changes;
   const metal = {
     title: "flat metal",
     workFunctionEv: 4.5,
     workFunctionSource: "invented",
     temperatureK: 0,
-    states: { kind: "table", energiesEv: [-200, 200], values: [1, 1] },
-    bandBottomBelowFermiEv: 10,
-    meanFreePath: { kind: "table", energiesEv: [0, 200], values: [1, 1] },
-    transportMeanFreePathNm: null,
+    layers: [{
+      material: "invented",
+      thicknessNm: Infinity,
+      states: states ?? { kind: "table", energiesEv: [-200, 200], values: [1, 1] },
+      bandBottomBelowFermiEv: bandBottomBelowFermiEv ?? 10,
+      meanFreePath: meanFreePath ?? { kind: "table", energiesEv: [0, 200], values: [1, 1] },
+      transportMeanFreePathNm: transportMeanFreePathNm ?? null,
+    }],
+    bandBending: null,
+    valenceMaximumBelowFermiEv: null,
+    gapEv: 0,
+    fast: null,
     barrier: "classical",
     photonEnergyEv: 10,
     absorbedPhotonsPerS: 1e6,
@@ -47,14 +64,13 @@ export function flatMetal(changes: FlatMetalChanges = {}): ResolvedScenario {
     seed: 1,
     energyStepEv: 0.02,
     warnings: [],
-    ...changes,
-  } satisfies Omit<ResolvedScenario, "lines" | "thermalEnergyEv" | "kineticEnergyShiftEv" | "accelerationEv">;
-  const kineticEnergyShiftEv = -metal.analyzerWorkFunctionEv - metal.biasV;
+    ...others,
+  } satisfies Omit<ResolvedScenario, "lines" | "thermalEnergyEv" | "kineticEnergyShiftEv" | "surface">;
   return {
     ...metal,
+    surface: [{ share: 1, workFunctionEv: metal.workFunctionEv, facetTiltDeg: 0 }],
     lines: [line(metal.photonEnergyEv)],
     thermalEnergyEv: 8.617333262e-5 * metal.temperatureK, // k_B in eV/K, exact in the SI of 2019
-    kineticEnergyShiftEv,
-    accelerationEv: metal.workFunctionEv + kineticEnergyShiftEv,
+    kineticEnergyShiftEv: -metal.analyzerWorkFunctionEv - metal.biasV,
   };
 }

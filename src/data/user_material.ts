@@ -1,0 +1,88 @@
+import { getNodeValue, type ParseError, parseTree, printParseErrorCode, stripComments } from "jsonc-parser";
+import { cannot, InputError, type Problem } from "../base/mod.ts";
+import { type Material, MATERIAL_IDS, parseMaterial } from "./materials.ts";
+
+/**
+ * Reads a material of the user: one JSON file of the form of the built-in ones, in which comments and trailing commas are
+ * allowed. Every number needs its unit, a source and a confidence, as there.
+ *
+ * Every problem is reported at once, each at `file#pointer` (JSON pointer, RFC 6901).
+ *
+ * @param text Contents of the file.
+ * @param fileName Name for messages.
+ * @returns The material.
+ * @throws {InputError} If the text is not JSON, gives a key or a core level twice, lacks a number, a unit or a source,
+ * has a number out of range, or takes the name of a built-in material.
+ * @example A file that only starts with gold
+ * ```ts
+ * import { InputError, material, materialFrom } from "@twoedge/twoedge";
+ * import assert from "node:assert/strict";
+ * const text = JSON.stringify({ ...material("Au"), id: "Au_foil", name: "our foil" });
+ * assert.equal(materialFrom(`// measured in May\n${text}`, "foil.json").name, "our foil");
+ * assert.throws(() => materialFrom('{ "id": "Au_foil" }', "foil.json"), InputError);
+ * ```
+ */
+export function materialFrom(text: string, fileName: string): Material {
+  const errors: ParseError[] = [];
+  const tree = parseTree(text, errors, { allowTrailingComma: true, allowEmptyContent: false });
+  if (errors.length > 0 || tree === undefined) {
+    const { error, offset } = errors[0] ?? { error: 0, offset: 0 };
+    const why = stripComments(text).trim() === "" ? "it is empty" : printParseErrorCode(error);
+    throw new InputError([{
+      place: `${fileName}:${text.slice(0, offset).split("\n").length}`,
+      message: cannot(
+        "read material",
+        `the file must be JSON (${why})`,
+        text.slice(offset, offset + 20).split("\n")[0],
+      ),
+    }]);
+  }
+  const problems: Problem[] = twice(tree).map((pointer) =>
+    problem(pointer, "each key may be given once", pointer.slice(pointer.lastIndexOf("/") + 1))
+  );
+  let found: Material | undefined;
+  try {
+    found = parseMaterial(getNodeValue(tree));
+    problems.push(...clashes(found));
+  } catch (error) {
+    if (!(error instanceof InputError)) throw error;
+    problems.push(...error.problems);
+  }
+  if (problems.length > 0 || found === undefined) {
+    throw new InputError(problems.map((p) => ({ ...p, place: `${fileName}#${p.place}` })));
+  }
+  return found;
+}
+
+function problem(place: string, rule: string, value: string): Problem {
+  return { place, message: cannot("read material", rule, value) };
+}
+
+/** Names that mean two things. */
+function clashes({ id, coreLevels }: Material): Problem[] {
+  const names = coreLevels.map(({ name }) => name);
+  return [
+    ...(MATERIAL_IDS.includes(id)
+      ? [problem("/id", "it must not be the name of a built-in material", id)]
+      : []),
+    ...names.flatMap((name, i) =>
+      names.indexOf(name) < i
+        ? [problem(`/coreLevels/${i}/name`, "each core level may be given once", name)]
+        : []
+    ),
+  ];
+}
+
+/** Pointers to keys that an object has twice; the later one would win unseen. */
+function twice(node: NonNullable<ReturnType<typeof parseTree>>, pointer = ""): string[] {
+  if (node.type !== "object") {
+    return (node.children ?? []).flatMap((child, i) => twice(child, `${pointer}/${i}`));
+  }
+  const seen = new Set<string>();
+  return (node.children ?? []).flatMap(({ children: [key, value] = [] }) => {
+    const place = `${pointer}/${String(key.value).replaceAll("~", "~0").replaceAll("/", "~1")}`;
+    const again = seen.has(place) ? [place] : [];
+    seen.add(place);
+    return [...again, ...twice(value, place)];
+  });
+}
