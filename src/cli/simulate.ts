@@ -20,7 +20,7 @@ import {
   type UserTable,
   type UserTables,
 } from "../scenario/mod.ts";
-import { HISTORIES_PER_BATCH, type Tally } from "../transport/mod.ts";
+import { HISTORIES_PER_BATCH } from "../transport/mod.ts";
 import { checkpointKey, readCheckpoint, writeCheckpoint } from "./checkpoint.ts";
 import { beside, readBytes } from "./files.ts";
 
