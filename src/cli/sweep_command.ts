@@ -135,7 +135,7 @@ export const sweepCommand = buildCommand({
       sbatchArg: {
         kind: "parsed",
         parse: text,
-        brief: "With --on slurm, another argument of sbatch, such as --account=me; repeatable",
+        brief: "With --on slurm, another argument of sbatch, as in --sbatch-arg=--account=me; repeatable",
         placeholder: "X",
         variadic: true,
         optional: true,

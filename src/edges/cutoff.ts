@@ -2,9 +2,9 @@ import { minimizePoisson, type PoissonProblem } from "../fit/mod.ts";
 import {
   type AcceptanceRamp,
   cutoffModel,
-  FAST_DECAY_EV,
+  lateRise,
+  levels,
   rampWidthEv,
-  SLOW_DECAY_EV,
   stepParameters,
 } from "./cutoff_model.ts";
 import { type FittedEdge, fittedEdge, type IntervalOptions, NO_INTERVALS } from "./fitted_edge.ts";
@@ -99,8 +99,6 @@ export function fitCutoff(
       problem = footProblem;
     }
   }
-  const [position, , flat, fast, slow] = best.values;
-  const topOver = flat + fast * Math.exp(-1) + slow * Math.exp(-FAST_DECAY_EV / SLOW_DECAY_EV);
   const edge = fittedEdge(best, problem, window, {
     vital: ["position", "sigma"],
     model: `${best === plain ? "step" : "step with exponential foot"} with decaying top${
@@ -109,9 +107,9 @@ export function fitCutoff(
   }, options.intervals ?? NO_INTERVALS);
   return {
     ...edge,
-    lateRise: Math.max(0, 1 - (flat + fast + slow) / topOver),
-    rampEv: options.ramp === null ? 0 : rampWidthEv(options.ramp, position),
-    levels: [best.values[5], flat + fast + slow],
+    lateRise: lateRise(best.values),
+    rampEv: options.ramp === null ? 0 : rampWidthEv(options.ramp, best.values[0]),
+    levels: levels(best.values),
   };
 }
 

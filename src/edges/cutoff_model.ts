@@ -2,9 +2,8 @@ import type { FitParameter, PoissonProblem } from "../fit/mod.ts";
 import { broadenedHinge, broadenedRampStep, broadenedTopStep } from "../spectrum/mod.ts";
 
 /** Decay lengths of the two falling parts of the top, eV: together they follow any smooth top over the window. */
-export const FAST_DECAY_EV = 0.3;
-/** See {@link FAST_DECAY_EV}. */
-export const SLOW_DECAY_EV = 1.5;
+const FAST_DECAY_EV = 0.3;
+const SLOW_DECAY_EV = 1.5;
 
 /** Parts of the model beyond one step. */
 export type CutoffExtra = "none" | "foot" | "second step";
@@ -53,6 +52,18 @@ export function stepParameters(window: Float64Array, start: CutoffStart): FitPar
     { name: "base", start: base, lower: 0, scale: Math.max(base, 1) },
     { name: "slope", start: 0, scale: Math.max(base, 1) },
   ];
+}
+
+/** Background below the edge, and the top extrapolated to the edge, counts. */
+export function levels(values: Float64Array): readonly [base: number, top: number] {
+  return [values[5], values[2] + values[3] + values[4]];
+}
+
+/** How much a top rises over the first 0.3 eV above the edge, as a share of itself there; 0 where it falls. */
+export function lateRise(values: Float64Array): number {
+  const [, , flat, fast, slow] = values;
+  const topOver = flat + fast * Math.exp(-1) + slow * Math.exp(-FAST_DECAY_EV / SLOW_DECAY_EV);
+  return Math.max(0, 1 - (flat + fast + slow) / topOver);
 }
 
 /**

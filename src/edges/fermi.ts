@@ -176,6 +176,7 @@ export function fitFermiEdge(
   const fit = useCurved ? curved : linear;
   const edge = fittedEdge(fit, useCurved ? curvedProblem : linearProblem, window, {
     vital: ["position"],
+    thermalEnergyEv: options.thermalEnergyEv,
     model: `${useCurved ? "quadratic" : "linear"} states x Fermi-Dirac, Gaussian response, ${
       withSatellites ? `background and ${copied.copies.length} satellites` : "sloping background"
     }${belowMain.length > 0 ? `, ${belowMain.length} line below` : ""}`,

@@ -28,7 +28,7 @@ export interface FittedEdge {
   readonly counts: Float64Array;
   /** Fitted counts there, shape (n). */
   readonly fittedCounts: Float64Array;
-  /** Channels between 10 % and 90 % of a Gaussian edge of this width. */
+  /** Channels between 10 % and 90 % of the edge, its thermal width included. */
   readonly channelsOnEdge: number;
   /** Names of the parts of the model that were used, in words. */
   readonly model: string;
@@ -80,7 +80,7 @@ export function birgeRatio(tests: ResidualTests): number {
  * @param fit Fit with parameters `position` and `sigma` first.
  * @param problem What was fitted.
  * @param energiesEv Window, eV.
- * @param about Names of parameters that must not sit at a bound, the model in words.
+ * @param about Names of parameters that must not sit at a bound, the model in words, kT where it widens the edge.
  * @param intervals What to compute beyond the covariance.
  * @returns The edge.
  */
@@ -88,7 +88,7 @@ export function fittedEdge(
   fit: PoissonFit,
   problem: PoissonProblem,
   energiesEv: Float64Array,
-  about: { readonly vital: readonly string[]; readonly model: string },
+  about: { readonly vital: readonly string[]; readonly model: string; readonly thermalEnergyEv?: number },
   intervals: IntervalOptions,
 ): FittedEdge {
   const tests = residualTests(fit, problem.data);
@@ -108,7 +108,8 @@ export function fittedEdge(
     energiesEv,
     counts: problem.data,
     fittedCounts: fit.fitted,
-    channelsOnEdge: (2.563 * sigmaEv) / stepEv, // 10-90 % of a Gaussian edge: 2 x 1.2816 sigma
+    // 10-90 % of a Gaussian edge 2 x 1.2816 sigma, of a Fermi edge 2 ln 9 kT; in quadrature good to 1.2 %.
+    channelsOnEdge: Math.hypot(2.563 * sigmaEv, 4.394 * (about.thermalEnergyEv ?? 0)) / stepEv,
     model: about.model,
     profileEv: intervals.profile && converged
       ? profileInterval(problem, fit, "position", inflation * inflation)

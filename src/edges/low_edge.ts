@@ -14,10 +14,9 @@ export const LATE_RISE_SHARE = 0.1;
 /** A fit of one cutoff worse than this chance is compared with one of two. */
 const SUSPICIOUS = 0.01;
 
-/** The cutoff that was taken, the fit of a single one, and two where one is not enough. */
+/** The cutoff that was taken, and both where there are two. */
 export type LowEdge = {
   readonly region: KineticRegion;
-  readonly one: FittedCutoff;
   readonly cutoff: FittedCutoff;
   readonly patches: Patches | null;
 };
@@ -43,10 +42,10 @@ export function findCutoff(
     .map((other) => other.energyEv);
   const isSuspicious = one.tests.chiSquareProbability < SUSPICIOUS || one.lateRise > LATE_RISE_SHARE ||
     rises.some((rise) => rise < one.positionEv.value);
-  const two = one.converged && isSuspicious
+  const two = isSuspicious || !one.converged
     ? fitPatches(region.energiesEv, region.counts, one, rises, options)
     : null;
-  return { region, one, cutoff: two?.edge ?? one, patches: two?.patches ?? null };
+  return { region, cutoff: two?.edge ?? one, patches: two?.patches ?? null };
 }
 
 /** All that speaks against the cutoff. */
@@ -65,9 +64,11 @@ export function judgeLow(low: LowEdge, facts: CommonFacts, findings: Findings): 
         "function is that of the lower step; measure a smaller spot, another bias, and a clean surface",
     );
   }
-  if (low.cutoff.converged && low.one.lateRise > LATE_RISE_SHARE) {
+  if (low.cutoff.converged && low.cutoff.lateRise > LATE_RISE_SHARE) {
     findings.doubt(
-      `the counts rise by ${(100 * low.one.lateRise).toFixed(0)} % over the 0.3 eV above the cutoff: the ` +
+      `the counts rise by ${
+        (100 * low.cutoff.lateRise).toFixed(0)
+      } % over the 0.3 eV above the cutoff: the ` +
         "barrier opens slowly or the surface has several work functions; the cutoff may lie lower",
     );
   }

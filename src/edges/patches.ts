@@ -1,7 +1,14 @@
 import type { Estimate } from "../base/mod.ts";
-import { minimizePoisson } from "../fit/mod.ts";
+import { minimizePoisson, type PoissonFit, type PoissonProblem, residualTests } from "../fit/mod.ts";
 import { ABOVE_EV, BELOW_EV, type CutoffOptions, type FittedCutoff } from "./cutoff.ts";
-import { cutoffModel, rampWidthEv, STEP_PARAMETERS, stepParameters } from "./cutoff_model.ts";
+import {
+  cutoffModel,
+  lateRise,
+  levels,
+  rampWidthEv,
+  STEP_PARAMETERS,
+  stepParameters,
+} from "./cutoff_model.ts";
 import { birgeRatio, fittedEdge, NO_INTERVALS } from "./fitted_edge.ts";
 
 /** Two cutoffs, as patches of different work function give. */
@@ -22,6 +29,8 @@ export const BIC_GAIN = 10;
 const NEAR_EV = 1.5;
 /** A step below this share of the other is no patch (chosen). */
 const LEAST_SHARE = 0.03;
+/** A fit of two steps better than this chance is the last that is tried. */
+const ENOUGH = 0.05;
 /** Distances between the steps that are tried beside those of rises that are seen: in widths of the edge, and eV. */
 const TRIED_WIDTHS = 3;
 const TRIED_EV = 0.4;
@@ -87,7 +96,8 @@ export function fitPatches(
     ...near.map((rise) => [Math.min(rise, position), Math.abs(rise - position)] as const),
     ...[TRIED_EV, TRIED_WIDTHS * sigma].map((distance) => [position - 0.3 * distance, distance] as const),
   ].filter(([lower]) => lower > window[0]);
-  const tried = starts.map(([lower, separation]) => {
+  let best: { readonly problem: PoissonProblem; readonly fit: PoissonFit } | null = null;
+  for (const [lower, separation] of starts) {
     const problem = {
       parameters: [
         ...stepParameters(window, { ...start, positionEv: lower, sigmaEv: Math.min(sigma, separation / 2) }),
@@ -100,12 +110,13 @@ export function fitPatches(
       data,
       ...model,
     };
-    return { problem, fit: minimizePoisson(problem) };
-  }).filter(({ fit }) =>
-    fit.converged && fit.atBound.every((name) => name !== "separation" && name !== "share")
-  );
-  if (tried.length === 0) return null;
-  const best = tried.reduce((a, b) => b.fit.deviance < a.fit.deviance ? b : a);
+    const fit = minimizePoisson(problem);
+    const isFree = fit.atBound.every((name) => name !== "separation" && name !== "share");
+    if (!fit.converged || !isFree) continue;
+    if (best === null || fit.deviance < best.fit.deviance) best = { problem, fit };
+    if (residualTests(fit, data).chiSquareProbability > ENOUGH) break;
+  }
+  if (best === null) return null;
 
   const edge = fittedEdge(best.fit, best.problem, window, {
     vital: ["position", "sigma"],
@@ -128,7 +139,6 @@ export function fitPatches(
   if (!isReal) return null;
   const covariance = best.fit.covariance[STEP_PARAMETERS] * inflation ** 2; // of position and separation
   const upper = edge.positionEv.value + separation.value;
-  const [, , flat, fast, slow] = best.fit.values;
   return {
     patches: {
       lowerEv: edge.positionEv,
@@ -143,9 +153,9 @@ export function fitPatches(
     },
     edge: {
       ...edge,
-      lateRise: 0,
+      lateRise: lateRise(best.fit.values),
       rampEv,
-      levels: [best.fit.values[5], flat + fast + slow],
+      levels: levels(best.fit.values),
     },
   };
 }

@@ -167,7 +167,7 @@ export function measureWorkFunction(
     cutoff,
     fermi: fermi?.edge ?? null,
     valence,
-    isLateRise: low !== null && low.one.lateRise > LATE_RISE_SHARE,
+    isLateRise: low !== null && low.cutoff.lateRise > LATE_RISE_SHARE,
     hasRamp: ramp !== null,
     resolutionFwhmEv: facts.resolutionFwhmEv,
     line,
@@ -192,6 +192,15 @@ export function measureWorkFunction(
         workFunction.standardUncertainty.toFixed(2)
       } eV; measure ` +
         "longer, or with a better resolution",
+    );
+  }
+  const valenceUncertainty = combined(budget, "valenceBandMaximumEv", valenceMaximum).standardUncertainty;
+  if (valence !== null && !findings.failed && valenceMaximum < 2 * valenceUncertainty) {
+    findings.doubt(
+      `the valence-band maximum would lie ${
+        valenceMaximum.toFixed(3)
+      } eV below the Fermi level, at it within the ` +
+        "uncertainty: a Fermi edge too faint to be recognized, or charging; measure longer, with less light",
     );
   }
   const logarithmicEv = valence?.logarithmicEv ?? null;

@@ -41,6 +41,8 @@ export interface FitProblem {
    * larger by sqrt(chi-square / degrees of freedom) where that is above 1. Default: 1e-8.
    */
   readonly tolerance?: number;
+  /** Steps after which it stops without convergence. Default: 200. */
+  readonly mostSteps?: number;
 }
 
 /** A minimum, or the best point that was reached. */
@@ -132,7 +134,7 @@ interface Point {
  */
 export function minimize(problem: FitProblem): FitResult {
   check(problem);
-  const { parameters, sigma, tolerance = DEFAULT_TOLERANCE } = problem;
+  const { parameters, sigma, tolerance = DEFAULT_TOLERANCE, mostSteps = MOST_STEPS } = problem;
   const n = problem.data.length;
   const lower = parameters.map((parameter) => parameter.lower ?? -Infinity);
   const upper = parameters.map((parameter) => parameter.upper ?? Infinity);
@@ -225,9 +227,9 @@ export function minimize(problem: FitProblem): FitResult {
   let columns = jacobian(point);
   let damping = DAMPING_START;
   let settled = false;
-  let stopped = `no minimum after ${MOST_STEPS} steps`;
+  let stopped = `no minimum after ${mostSteps} steps`;
   let previous = { offset: Infinity, fall: Infinity };
-  for (let step = 0; step < MOST_STEPS && !settled; step++) {
+  for (let step = 0; step < mostSteps && !settled; step++) {
     const free = freeParameters(point, columns);
     if (free.length === 0) {
       settled = true;

@@ -26,7 +26,13 @@ const LEAST_VARIANCE = 0.05;
 const MOST_ROUNDS = 15;
 /** Steps of a round end below this, in standard errors: the next round moves the target anyway. */
 const STEP_TOLERANCE = 1e-3;
-/** Rounds end when no parameter moves by more than this share of its standard error. */
+/** A round need not reach its minimum; so many steps are enough near the answer. */
+const STEPS_A_ROUND = 12;
+const FIRST_STEPS = 60;
+/**
+ * Rounds end when no parameter moves by more than this share of its standard error, which counts as larger by
+ * sqrt(chi-square / degrees of freedom) where that is above 1.
+ */
 const ROUND_TOLERANCE = 1e-3;
 
 /**
@@ -73,13 +79,15 @@ export function minimizePoisson(problem: PoissonProblem): PoissonFit {
       ...problem,
       parameters,
       tolerance: problem.tolerance ?? STEP_TOLERANCE,
+      mostSteps: round === 0 ? FIRST_STEPS : STEPS_A_ROUND,
       sigma: variance.map(Math.sqrt),
     });
     evaluations += fit.evaluations;
     const moved = previous.map(({ start }, j) =>
       Math.abs(fit.values[j] - start) / fit.standardErrors[j] || 0
     );
-    settled = round > 0 && Math.max(...moved) < ROUND_TOLERANCE;
+    const inflation = Math.sqrt(Math.max(1, fit.chiSquare / Math.max(1, fit.degreesOfFreedom)));
+    settled = round > 0 && fit.converged && Math.max(...moved) < ROUND_TOLERANCE * inflation;
     if (settled || round === MOST_ROUNDS) break;
     parameters = parameters.map((parameter, j) => ({ ...parameter, start: fit.values[j] }));
     variance = fit.fitted.map((mean) => Math.max(mean, LEAST_VARIANCE));

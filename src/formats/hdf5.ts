@@ -64,7 +64,7 @@ export async function readHdf5<T>(
   let file: File | undefined;
   try {
     file = new h5.File(FILE, "r");
-    return use(groupReader(h5, file, await h5.ready));
+    return use(groupReader(h5, file, await h5.ready, false));
   } catch (error) {
     if (error instanceof InputError) throw error;
     // A damaged file can fail anywhere below.
@@ -111,46 +111,64 @@ export interface Hdf5Group {
 
 type Module = Awaited<Hdf5["ready"]>;
 
-function groupReader(h5: Hdf5, group: Group, module: Module): Hdf5Group {
-  // The library gives null both for what is not there and for what cannot be opened.
-  const entityAt = (path: string): Entity | null => {
-    let entity: Entity | null = group;
-    for (const name of path.split("/").filter((name) => name !== "")) {
-      if (!(entity instanceof h5.Group)) return null;
-      const below: Entity | null = entity.get(name);
-      if (below === null && entity.keys().includes(name)) throw new Error(`${path} cannot be opened`);
-      entity = below;
-    }
-    return entity;
-  };
-  const datasetAt = (path: string): Dataset | undefined => {
-    const entity = entityAt(path);
-    return entity instanceof h5.Dataset ? entity : undefined;
-  };
-  const attribute = (path: string, name: string): Hdf5Value | undefined => {
-    const entity = entityAt(path);
-    if (!(entity instanceof h5.Group || entity instanceof h5.Dataset)) return undefined;
-    return Object.hasOwn(entity.attrs, name) ? ourValue(entity.attrs[name].value) : undefined;
-  };
-  const nxClass = attribute("", "NX_class");
+/**
+ * A damaged group can look like an empty one: ours then lack their class or have fewer parts than counted.
+ *
+ * @param isOurs Whether the file is one of ours.
+ */
+function groupReader(h5: Hdf5, group: Group, module: Module, isOurs: boolean): Hdf5Group {
+  const ownAttribute = (owner: Group | Dataset, name: string): Hdf5Value | undefined =>
+    Object.hasOwn(owner.attrs, name) ? ourValue(owner.attrs[name].value) : undefined;
+  const nxClass = ownAttribute(group, "NX_class");
+  const count = ownAttribute(group, COUNT);
   const names = group.keys();
-  const count = attribute("", COUNT);
+  if (isOurs && nxClass === undefined) throw new Error(`${group.path} cannot be read`);
   if (count instanceof Float64Array && names.length < count[0]) {
     throw new Error(`${group.path} has ${names.length} of ${count[0]} parts`);
   }
+
+  const groupAt = (path: string): Hdf5Group | undefined => {
+    const [name, ...rest] = path.split("/");
+    const entity = entityOf(name);
+    if (!(entity instanceof h5.Group)) return undefined;
+    const below = groupReader(h5, entity, module, isOurs || count !== undefined);
+    return rest.length === 0 ? below : below.group(rest.join("/"));
+  };
+  /** The library gives null both for what is not there and for what cannot be opened, or calls the latter a group. */
+  const entityOf = (name: string): Entity | null => {
+    const entity = group.get(name);
+    if (entity === null && names.includes(name)) throw new Error(`${group.path}/${name} cannot be opened`);
+    if (entity instanceof h5.Group) entity.keys(); // throws when it is none
+    return entity;
+  };
+  const datasetOf = (name: string): Dataset | undefined => {
+    const entity = entityOf(name);
+    return entity instanceof h5.Dataset ? entity : undefined;
+  };
+  /** Reads here, or in the group that a path leads to. */
+  const at = <T>(path: string, here: (name: string) => T, there: (group: Hdf5Group, name: string) => T) => {
+    const end = path.lastIndexOf("/");
+    if (end < 0) return here(path);
+    const below = groupAt(path.slice(0, end));
+    return below === undefined ? undefined : there(below, path.slice(end + 1));
+  };
   return {
     names,
     nxClass: typeof nxClass === "string" ? nxClass : "",
-    group(path) {
-      const entity = entityAt(path);
-      return entity instanceof h5.Group ? groupReader(h5, entity, module) : undefined;
-    },
-    shape: (path) => datasetAt(path)?.metadata.shape ?? undefined,
-    value(path) {
-      const dataset = datasetAt(path);
-      return dataset === undefined ? undefined : ourValue(checkedValue(dataset, module));
-    },
-    attribute,
+    group: groupAt,
+    shape: (path) =>
+      at(path, (name) => datasetOf(name)?.metadata.shape ?? undefined, (below, name) => below.shape(name)),
+    value: (path) =>
+      at(path, (name) => {
+        const dataset = datasetOf(name);
+        return dataset === undefined ? undefined : ourValue(checkedValue(dataset, module));
+      }, (below, name) => below.value(name)),
+    attribute: (path, attribute) =>
+      at(path, (name) => {
+        const owner = name === "" ? group : entityOf(name);
+        const isOwner = owner instanceof h5.Group || owner instanceof h5.Dataset;
+        return isOwner ? ownAttribute(owner, attribute) : undefined;
+      }, (below, name) => below.attribute(name, attribute)),
   };
 }
 

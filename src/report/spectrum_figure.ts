@@ -1,4 +1,5 @@
 import { cannot } from "../base/mod.ts";
+import { CONFIG, DARK, EDGE_STYLES, type Spec, WIDTH, wrap } from "./look.ts";
 import { formatEstimate } from "./values.ts";
 
 /** Points of a curve. */
@@ -39,7 +40,6 @@ export interface SpectrumFigureInput {
   readonly edges: readonly FigureEdge[];
 }
 
-type Spec = Record<string, unknown>;
 type Expected = NonNullable<SpectrumFigureInput["expected"]>;
 
 interface EnergyAxis extends Spec {
@@ -57,7 +57,6 @@ interface Residuals {
 }
 
 const ACTION = "draw a spectrum";
-const WIDTH = 640;
 const OVERVIEW_HEIGHT = 220;
 const CLOSE_UP_HEIGHT = 170;
 const RESIDUAL_HEIGHT = 80;
@@ -72,44 +71,11 @@ const MOST_DOTS = 1500;
 /** Letters that fit into a line of the title and of a subtitle. */
 const LINE_LETTERS = { title: 60, subtitle: 72 } as const;
 
-const DARK = "#222222";
 /** Measured curves: gray levels that differ in print too. */
 const MEASURED_GRAYS = ["#8c8c8c", "#4d4d4d"] as const;
-/** Edges: blue and vermillion of M. Okabe, K. Ito, Color Universal Design (2008), with dashes for gray print. */
-const EDGE_STYLES = [{ color: "#0072B2", dash: [1, 0] }, { color: "#D55E00", dash: [7, 3] }] as const;
 
 /** A dot in the middle of a symbol as large as those of the lines: legends of unequal height do not stand in line. */
 const SMALL_DOT = "M-0.4,0A0.4,0.4,0,1,1,0.4,0A0.4,0.4,0,1,1,-0.4,0";
-
-const CONFIG = {
-  // Otherwise each of thousands of points carries a sentence.
-  aria: false,
-  font: "DejaVu Sans, sans-serif",
-  view: { stroke: DARK },
-  title: { anchor: "start", color: DARK, fontSize: 13, subtitleColor: DARK, subtitleFontSize: 11, offset: 8 },
-  axis: {
-    domain: false,
-    grid: false,
-    tickColor: DARK,
-    labelColor: DARK,
-    labelFontSize: 11,
-    titleColor: DARK,
-    titleFontSize: 11.5,
-    titleFontWeight: "normal",
-  },
-  axisX: { labelFlush: false },
-  // The same room for the labels of every panel puts the titles of the vertical axes in line.
-  axisY: { minExtent: 48, maxExtent: 48, labelOverlap: false },
-  legend: {
-    orient: "top",
-    offset: 6,
-    labelColor: DARK,
-    labelFontSize: 11,
-    labelLimit: 0,
-    symbolSize: 200,
-    symbolStrokeWidth: 2,
-  },
-};
 
 /**
  * The figure of a photoemission spectrum: an overview on a square-root scale, and a close-up with residuals of each edge.
@@ -466,18 +432,6 @@ function extent(lists: readonly ArrayLike<number>[]): [number, number] {
     }
   }
   return [lowest, highest];
-}
-
-/** The text in lines of at most so many letters; a longer word has its own line. */
-function wrap(text: string, letters: number): string[] {
-  const lines: string[] = [];
-  for (const word of text.split(/\s+/)) {
-    const line = lines.at(-1);
-    if (line !== undefined && `${line} ${word}`.length <= letters) {
-      lines[lines.length - 1] = `${line} ${word}`;
-    } else lines.push(word);
-  }
-  return lines;
 }
 
 function check({ measured, expected, edges }: SpectrumFigureInput): void {

@@ -15,7 +15,13 @@ export type {
   SweepAxis,
   ZipAxis,
 } from "./types.ts";
-export { FITTED_QUANTITIES, RECORDED_NAMES, type RecordedName, uncertaintyName } from "./recorded.ts";
+export {
+  FITTED_QUANTITIES,
+  RECORDED_NAMES,
+  type RecordedName,
+  SIMULATED_VALUES,
+  uncertaintyName,
+} from "./recorded.ts";
 export { checkSweepPaths, parseSweep, sweepJsonSchema } from "./parse.ts";
 export { type Settings, type SweepPoints, sweepPoints } from "./axes.ts";
 export { sobolPoints } from "./sobol.ts";

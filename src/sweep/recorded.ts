@@ -1,5 +1,5 @@
 /** Values of `result.json` that a sweep can keep, by their path there; each ends in its unit where it has one. */
-const SIMULATED = [
+export const SIMULATED_VALUES = [
   "truth.workFunctionEv",
   "truth.maxKineticEnergyEv",
   "truth.cutoffEv",
@@ -22,11 +22,11 @@ export const FITTED_QUANTITIES = [
 ] as const;
 
 /** Name of a value of a point that can be recorded. */
-export type RecordedName = typeof SIMULATED[number] | `fit.${typeof FITTED_QUANTITIES[number]}`;
+export type RecordedName = typeof SIMULATED_VALUES[number] | `fit.${typeof FITTED_QUANTITIES[number]}`;
 
 /** All names that can be recorded. */
 export const RECORDED_NAMES: readonly RecordedName[] = [
-  ...SIMULATED,
+  ...SIMULATED_VALUES,
   ...FITTED_QUANTITIES.map((quantity) => `fit.${quantity}` as const),
 ];
 

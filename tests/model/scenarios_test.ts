@@ -1,4 +1,5 @@
 import assert from "node:assert/strict";
+import { fileURLToPath } from "node:url";
 import { loadScenario } from "../../src/cli/simulate.ts";
 import { type PairEngineData, pairEngineData } from "../../src/model/mod.ts";
 import { runSeries } from "../../src/run/mod.ts";
@@ -10,7 +11,10 @@ import { sumOf, tallyMean } from "../support/tally_mean.ts";
 
 const FOLDER = new URL("../../scenarios/", import.meta.url);
 const NAMES = [...Deno.readDirSync(FOLDER)].map((entry) => entry.name)
-  .filter((name) => name.endsWith(".json") && !name.endsWith(".schema.json")).toSorted();
+  .filter((name) => name.endsWith(".json") && !name.endsWith(".schema.json"))
+  // X-ray scenarios have a kernel and a test of their own (fast_test.ts).
+  .filter((name) => !/"(anode|monochromatedAluminum)"/.test(Deno.readTextFileSync(new URL(name, FOLDER))))
+  .toSorted();
 
 /** Bins first..end - 1 of one window of energies. */
 type Window = readonly [first: number, end: number];
@@ -41,7 +45,8 @@ function forcedElectrons(engine: PairEngineData, tally: Tally): Float64Array {
 
 /**
  * Checks window by window that the mean difference of the tallies is zero within 4.5 of its standard errors, from the
- * scatter between 64 groups: one false alarm in 30 000 for each window (Student's t of 63 degrees of freedom).
+ * scatter between 64 groups: one false alarm in 30 000 for each window (Student's t of 63 degrees of freedom), one in a
+ * hundred for the 400 windows of this file together. Seeds are fixed, so it can come up only when the histories change.
  */
 function assertSame(
   engine: PairEngineData,
@@ -75,7 +80,7 @@ function shifted(resolved: ResolvedScenario, bins: number, stepEv: number): Reso
 Deno.test.each(NAMES.map((name) => ({ name })))(
   "forced and analogue tallies of scenarios/$name agree",
   async ({ name }) => {
-    const { resolved } = await loadScenario(new URL(name, FOLDER).pathname, []);
+    const { resolved } = await loadScenario(fileURLToPath(new URL(name, FOLDER)), []);
     const asShipped = pairEngineData(resolved);
     const { stepEv } = asShipped.stack.grid;
     const tally = runSeries(asShipped, 21, 320);
@@ -106,7 +111,7 @@ Deno.test.each(NAMES.map((name) => ({ name })))(
 Deno.test.each(NAMES.map((name) => ({ name })))(
   "forced and analogue tallies of scenarios/$name agree over all directions",
   async ({ name }) => {
-    const shipped = (await loadScenario(new URL(name, FOLDER).pathname, [])).resolved;
+    const shipped = (await loadScenario(fileURLToPath(new URL(name, FOLDER)), [])).resolved;
     const resolved = { ...shipped, acceptanceHalfAngleDeg: 90, emissionAngleDeg: 0 };
     const engine = pairEngineData(resolved);
     const { stepEv } = engine.stack.grid;

@@ -1,6 +1,6 @@
 import assert from "node:assert/strict";
 import { runSweep, type SweepOptions, type SweepResult } from "../../src/run/mod.ts";
-import { parseScenario, resolveScenario } from "../../src/scenario/mod.ts";
+import { parseScenario, type ResolvedScenario, resolveScenario } from "../../src/scenario/mod.ts";
 import { parseSweep } from "../../src/sweep/mod.ts";
 import { QUICK_GOLD, sweepText } from "../support/sweep_text.ts";
 
@@ -51,7 +51,7 @@ Deno.test("runSweep() turns a defect at one point into a failure of that point",
   const broken = (set: readonly string[]) => {
     const resolved = resolve(set);
     // No scenario file can say this; the worker thread throws.
-    return set[0] === "biasV=-8" ? { ...resolved, energyStepEv: NaN } : resolved;
+    return set[0] === "biasV=-8" ? { ...resolved, lines: null } as unknown as ResolvedScenario : resolved;
   };
   const statuses: string[] = [];
   for await (const { record } of runSweep(sweep, broken, { workers: 2 })) {

@@ -3,7 +3,8 @@
  * intervals hold it. `deno task coverage [REPLICATES]` prints the table.
  *
  * What the budget takes for uncertain is drawn anew for each replicate: counts from their Poisson distribution, and the
- * photon energy from a normal one with the 1 meV of the budget.
+ * photon energy from a normal one with the 1 meV of the budget. Only the form of the states is not: it is linear here, so
+ * that the budget, which allows for other forms, covers too much; its share is shown left out and left in.
  */
 import { nearestLine } from "../../src/data/mod.ts";
 import { measureWorkFunction } from "../../src/edges/mod.ts";
@@ -29,9 +30,11 @@ export interface Coverage {
   readonly failed: number;
   /** Answers that were not called good. */
   readonly flagged: number;
-  /** Shares of the answers whose interval of one and of two standard uncertainties holds the truth. */
+  /** Shares of the answers whose interval of one and of two standard uncertainties, without states, holds the truth. */
   readonly within: readonly [k1: number, k2: number];
-  /** Mean of (answer - truth) / standard uncertainty, and its standard deviation. */
+  /** The same with the whole uncertainty. */
+  readonly withinWhole: readonly [k1: number, k2: number];
+  /** Mean of (answer - truth) / standard uncertainty without states, and its standard deviation. */
   readonly meanPull: number;
   readonly pullDeviation: number;
 }
@@ -40,22 +43,29 @@ export interface Coverage {
 export function coverage(shape: TwoEdges, replicates: number, errorEv = 0): Coverage {
   const { energiesEv, counts } = expectedTwoEdges(shape);
   const pulls: number[] = [];
+  const wholePulls: number[] = [];
   let flagged = 0;
   for (let replicate = 0; replicate < replicates; replicate++) {
     const region = twoEdgesRegion(shape, energiesEv, countTwoEdges(counts, replicate));
-    const { workFunctionEv, verdict } = measureWorkFunction([region], { knownLine: nearestLine });
+    const { workFunctionEv, verdict, budget } = measureWorkFunction([region], { knownLine: nearestLine });
     if (workFunctionEv === null) continue;
     if (verdict !== "good") flagged++;
     const truth = shape.patches[0][0] + errorEv + PHOTON_UNCERTAINTY_EV * normalDraw(replicate);
-    pulls.push((workFunctionEv.value - truth) / workFunctionEv.standardUncertainty);
+    const { value, standardUncertainty } = workFunctionEv;
+    const form = budget.find((term) => term.name === "Fermi edge, form of the states");
+    const states = form?.standardUncertaintyEv ?? 0;
+    pulls.push((value - truth) / Math.sqrt(standardUncertainty ** 2 - states ** 2));
+    wholePulls.push((value - truth) / standardUncertainty);
   }
   const mean = pulls.reduce((sum, pull) => sum + pull, 0) / pulls.length;
-  const share = (k: number): number => pulls.filter((pull) => Math.abs(pull) <= k).length / pulls.length;
+  const share = (of: readonly number[], k: number): number =>
+    of.filter((pull) => Math.abs(pull) <= k).length / of.length;
   return {
     replicates,
     failed: replicates - pulls.length,
     flagged,
-    within: [share(1), share(2)],
+    within: [share(pulls, 1), share(pulls, 2)],
+    withinWhole: [share(wholePulls, 1), share(wholePulls, 2)],
     meanPull: mean,
     pullDeviation: Math.sqrt(
       pulls.reduce((sum, pull) => sum + (pull - mean) ** 2, 0) / Math.max(1, pulls.length - 1),
@@ -73,13 +83,20 @@ function normalDraw(replicate: number): number {
 if (import.meta.main) {
   const replicates = Number(Deno.args[0] ?? 1000);
   const percent = (share: number): string => `${(100 * share).toFixed(1)} %`.padStart(8);
-  console.log(`${replicates} replicates        k = 1    k = 2   mean pull  deviation  flagged  failed`);
+  console.log(`${replicates} replicates   without states: k = 1    k = 2   mean pull  deviation`);
+  console.log(`${"".padEnd(18)}with states: k = 1    k = 2     flagged     failed`);
   for (const [name, shape] of Object.entries(SCENARIOS)) {
     const found = coverage(shape, replicates);
-    const numbers = [found.meanPull.toFixed(3).padStart(11), found.pullDeviation.toFixed(3).padStart(10)];
+    const { within, withinWhole, meanPull, pullDeviation, flagged, failed } = found;
     console.log(
-      `${name.padEnd(20)} ${percent(found.within[0])} ${percent(found.within[1])} ${numbers.join(" ")} ` +
-        `${percent(found.flagged / found.replicates)} ${String(found.failed).padStart(6)}`,
+      `${name.padEnd(28)} ${percent(within[0])} ${percent(within[1])} ${meanPull.toFixed(3).padStart(11)} ${
+        pullDeviation.toFixed(3).padStart(10)
+      }`,
+    );
+    console.log(
+      `${"".padEnd(28)} ${percent(withinWhole[0])} ${percent(withinWhole[1])} ${
+        percent(flagged / replicates).padStart(11)
+      } ${String(failed).padStart(10)}`,
     );
   }
 }
