@@ -83,7 +83,12 @@ export function levelsFigure(input: LevelsFigureInput): Spec {
     level(vacuumEv, `vacuum level: W = ${formatEstimate(workFunctionEv, "eV")}`),
     level(0, "Fermi level of the sample"),
     ...(valenceBandMaximumEv === null ? [] : [
-      level(-valenceBandMaximumEv.value, `valence band: ${formatEstimate({ ...valenceBandMaximumEv, value: -valenceBandMaximumEv.value }, "eV")}`),
+      level(
+        -valenceBandMaximumEv.value,
+        `valence band: ${
+          formatEstimate({ ...valenceBandMaximumEv, value: -valenceBandMaximumEv.value }, "eV")
+        }`,
+      ),
     ]),
   ];
   const analyzer: Level[] = [
