@@ -8,6 +8,7 @@ import { type Context, GOOD, USAGE } from "./flags.ts";
 import { inspectCommand } from "./inspect_command.ts";
 import type { TerminalStream } from "./progress.ts";
 import { linesCommand } from "./lines_command.ts";
+import { reportCommand } from "./report_command.ts";
 import { materialsCommand, validateCommand } from "./scenario_commands.ts";
 import { seriesCommand } from "./series_command.ts";
 import { simulateCommand } from "./simulate_command.ts";
@@ -32,6 +33,7 @@ const application = buildApplication<Context>(
       validate: validateCommand,
       materials: materialsCommand,
       demo: demoCommand,
+      report: reportCommand,
       sweep: sweepCommand,
       sweepStatus: sweepStatusCommand,
       sweepCollect: sweepCollectCommand,

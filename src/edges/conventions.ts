@@ -77,6 +77,7 @@ export function cutoffConventions(fit: FittedCutoff): CutoffConventions {
     const half = 0.5 * (base + mean3(top));
     let i = top;
     while (i > 0 && mean3Or(i) > half) i--;
+    if (half - mean3Or(i) > mean3Or(i + 1) - half) i++;
     const crossing = localLine(energiesEv, counts, i, halfEv);
     const halfError = 0.5 * Math.hypot(baseError, Math.sqrt(mean3(top) / 3));
     add(

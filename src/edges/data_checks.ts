@@ -50,7 +50,7 @@ export function badChannels(counts: Float64Array): BadChannels {
 }
 
 /**
- * Counts with dropouts and spikes replaced by the mean of their neighbors: for finding edges, never for fitting them.
+ * Counts with dropouts and spikes replaced by the mean of their neighbors.
  *
  * @param counts Counts.
  * @param bad From {@link badChannels}.

@@ -23,15 +23,14 @@ export type LowEdge = {
 
 /** The cutoff, in the region with the most significant low edge; two where one does not describe the counts. */
 export function findCutoff(
-  clean: readonly KineticRegion[],
-  asMeasured: ReadonlyMap<KineticRegion, KineticRegion>,
+  regions: readonly KineticRegion[],
   ramp: AcceptanceRamp | null,
   intervals: IntervalOptions,
 ): LowEdge | null {
-  const best = clean.flatMap((region) => {
+  const best = regions.flatMap((region) => {
     const candidates = edgeCandidates(region.energiesEv, region.counts);
     const candidate = cutoffCandidate(candidates);
-    return candidate ? [{ region: asMeasured.get(region)!, candidate, candidates }] : [];
+    return candidate ? [{ region, candidate, candidates }] : [];
   }).sort((a, b) => b.candidate.significance - a.candidate.significance)[0];
   if (best === undefined) return null;
   const { region, candidate, candidates } = best;

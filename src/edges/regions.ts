@@ -1,5 +1,5 @@
 import { cannot, InputError, suggest } from "../base/mod.ts";
-import { deadTimeCorrected } from "./data_checks.ts";
+import { type BadChannels, badChannels, deadTimeCorrected, withoutBadChannels } from "./data_checks.ts";
 import type { Satellite } from "./satellites.ts";
 
 /** One measured region as a fit needs it. */
@@ -74,7 +74,7 @@ export interface MeasureOptions {
   ) => { readonly name: string; readonly energyEv: number; readonly satellites: readonly Satellite[] } | null;
 }
 
-/** A region on an ascending kinetic axis, counts corrected for dead time. */
+/** A region on an ascending kinetic axis, counts corrected for dead time and cleaned of single bad channels. */
 export type KineticRegion = EdgeRegion & {
   readonly photonEnergyEv: number;
   readonly photonFrom: string;
@@ -83,6 +83,8 @@ export type KineticRegion = EdgeRegion & {
   readonly readRangeEv: readonly [number, number];
   /** Counts as read, on the same axis. */
   readonly rawCounts: Float64Array;
+  /** Channels that cannot be counting statistics; in `counts` dropouts and spikes are the mean of their neighbors. */
+  readonly bad: BadChannels;
   /** Largest share of the electrons lost to dead time. */
   readonly deadShare: number;
 };
@@ -206,10 +208,13 @@ function ontoKineticAxis(
   const live = deadTimeS === null || countingTimeS === null
     ? { counts: rawCounts, deadShare: 0 }
     : deadTimeCorrected(rawCounts, deadTimeS, countingTimeS);
+  const bad = badChannels(rawCounts);
   return {
     ...region,
-    ...live,
+    counts: withoutBadChannels(live.counts, bad),
+    deadShare: live.deadShare,
     rawCounts,
+    bad,
     fromBinding,
     axisFrom: options.axis !== undefined ? "given by the user" : "file",
     readRangeEv: [region.energiesEv[0], region.energiesEv[n - 1]],

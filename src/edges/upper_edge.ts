@@ -14,7 +14,7 @@ const GHOST_DISTANCE_EV = 0.15;
 /**
  * Falls of the main line; slow and faint ones only where no sharp one is found.
  *
- * @param regions Regions, with counts cleaned of bad channels.
+ * @param regions Regions.
  * @param satellites Weaker lines of the lamp.
  * @returns Falls that are no satellite's copy of a stronger one.
  */

@@ -1,6 +1,6 @@
 import type { Notice } from "../base/mod.ts";
 import type { FittedCutoff } from "./cutoff.ts";
-import { type BadChannels, badChannels } from "./data_checks.ts";
+import type { BadChannels } from "./data_checks.ts";
 import type { FittedFermiEdge } from "./fermi.ts";
 import type { FittedEdge } from "./fitted_edge.ts";
 import { edgeCandidates, meanCounts } from "./locate.ts";
@@ -194,7 +194,7 @@ export function judgeData(
     );
   });
   for (const region of new Set(used.map((use) => use.region))) {
-    const bad = badChannels(region.rawCounts);
+    const { bad } = region;
     const edges = used.filter((use) => use.region === region);
     judgeLone(bad.dropouts, "far fewer counts than their neighbors (dropouts)", region, edges, findings);
     judgeLone(bad.spikes, "far more counts than their neighbors (spikes)", region, edges, findings);
@@ -221,7 +221,7 @@ function judgeLone(
     findings.doubt(
       `channels at ${shown} hold ${what}, in the fit of the ${
         hit.map(({ name }) => name).join(" and of the ")
-      }; remove them from the file or measure again`,
+      }; the mean of their neighbors was taken instead; measure again`,
     );
   } else findings.warn("lone-channels", `channels at ${shown} hold ${what}, outside the fits`, region.label);
 }

@@ -3,7 +3,6 @@ import { BOLTZMANN_EV_PER_K } from "../data/mod.ts";
 import { budgetCorrelation, combined, expandedUncertainty, type Quantity } from "./budget.ts";
 import { budgetTerms } from "./budget_terms.ts";
 import { cutoffConventions } from "./conventions.ts";
-import { badChannels, withoutBadChannels } from "./data_checks.ts";
 import type { AcceptanceRamp } from "./cutoff_model.ts";
 import { energyReferences } from "./energy_reference.ts";
 import type { FittedEdge, IntervalOptions } from "./fitted_edge.ts";
@@ -13,7 +12,6 @@ import {
   type CommonFacts,
   commonFacts,
   type EdgeRegion,
-  type KineticRegion,
   type MeasureOptions,
   type ScaleGain,
 } from "./regions.ts";
@@ -51,22 +49,11 @@ export function measureWorkFunction(
   const facts = commonFacts(chosen, options);
   const gain = options.scaleGain ?? UNIT_GAIN;
   const findings = new Findings();
-  // Edges are looked for in clean counts and fitted to the counts as they are.
-  const asMeasured = new Map<KineticRegion, KineticRegion>();
-  const clean = chosen.map((region) => {
-    const copy = { ...region, counts: withoutBadChannels(region.counts, badChannels(region.rawCounts)) };
-    asMeasured.set(copy, region);
-    return copy;
-  });
-
   const ramp = acceptanceRamp(facts, fromBinding);
-  const low = findCutoff(clean, asMeasured, ramp, intervalOptions(options, 0));
+  const low = findCutoff(chosen, ramp, intervalOptions(options, 0));
   const cutoff = low?.cutoff ?? null;
 
-  const falls = mainFalls(clean, satellites).map((fall) => ({
-    ...fall,
-    region: asMeasured.get(fall.region)!,
-  }));
+  const falls = mainFalls(chosen, satellites);
   const onset = falls.length > 0 ? Math.max(...falls.map((fall) => fall.candidate.energyEv)) : null;
   const given = options.fermiLevelEv ?? null;
   const references = cutoff === null ? [] : energyReferences(
@@ -115,7 +102,7 @@ export function measureWorkFunction(
       "neither a Fermi edge nor a valence-band edge was found: extend the window to higher kinetic energy",
     );
   } else judgeEdge(upperName, upper, findings);
-  if ((low === null ? clean : [low.region]).some(looksReversed)) {
+  if ((low === null ? chosen : [low.region]).some(looksReversed)) {
     findings.fail(
       "the counts are highest just below their upper end, as on an energy axis read in the wrong direction; " +
         `try --axis ${fromBinding ? "kinetic" : "binding"}`,

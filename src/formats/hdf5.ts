@@ -64,7 +64,7 @@ export async function readHdf5<T>(
   let file: File | undefined;
   try {
     file = new h5.File(FILE, "r");
-    return use(groupReader(h5, file, await h5.ready, false));
+    return use(groupReader(h5, file, await h5.ready));
   } catch (error) {
     if (error instanceof InputError) throw error;
     // A damaged file can fail anywhere below.
@@ -111,18 +111,12 @@ export interface Hdf5Group {
 
 type Module = Awaited<Hdf5["ready"]>;
 
-/**
- * A damaged group can look like an empty one: ours then lack their class or have fewer parts than counted.
- *
- * @param isOurs Whether the file is one of ours.
- */
-function groupReader(h5: Hdf5, group: Group, module: Module, isOurs: boolean): Hdf5Group {
+function groupReader(h5: Hdf5, group: Group, module: Module): Hdf5Group {
   const ownAttribute = (owner: Group | Dataset, name: string): Hdf5Value | undefined =>
     Object.hasOwn(owner.attrs, name) ? ourValue(owner.attrs[name].value) : undefined;
   const nxClass = ownAttribute(group, "NX_class");
   const count = ownAttribute(group, COUNT);
   const names = group.keys();
-  if (isOurs && nxClass === undefined) throw new Error(`${group.path} cannot be read`);
   if (count instanceof Float64Array && names.length < count[0]) {
     throw new Error(`${group.path} has ${names.length} of ${count[0]} parts`);
   }
@@ -131,7 +125,7 @@ function groupReader(h5: Hdf5, group: Group, module: Module, isOurs: boolean): H
     const [name, ...rest] = path.split("/");
     const entity = entityOf(name);
     if (!(entity instanceof h5.Group)) return undefined;
-    const below = groupReader(h5, entity, module, isOurs || count !== undefined);
+    const below = groupReader(h5, entity, module);
     return rest.length === 0 ? below : below.group(rest.join("/"));
   };
   /** The library gives null both for what is not there and for what cannot be opened, or calls the latter a group. */

@@ -80,10 +80,8 @@ function writeEntry(entry: Hdf5Writer, region: SpectrumRegion): void {
 
   const sample = entry.group("sample", "NXsample");
   text(sample, "name", take("sample"));
-  if (left.get("simulated") === "true") {
-    left.delete("simulated");
-    sample.text("type", "simulated data");
-  }
+  // The note says it too, where a checksum guards it.
+  if (left.get("simulated") === "true") sample.text("type", "simulated data");
   number(sample.group("bias_env", "NXenvironment"), "value", region.biasV, "V");
   number(sample.group("temperature_env", "NXenvironment"), "value", takeNumber(left, "temperature_k"), "K");
 

@@ -19,3 +19,22 @@ export {
   type SweepFigureAxis,
   type SweepFigureInput,
 } from "./sweep_figure.ts";
+export { budgetFigure, type BudgetFigureInput, type FigureBudgetTerm } from "./budget_figure.ts";
+export {
+  depthFigure,
+  type DepthFigureInput,
+  type FigureDepthCurve,
+  type FigureLossPart,
+  lossFigure,
+  type LossFigureInput,
+} from "./curves_figures.ts";
+export { cutoffFigure, type CutoffFigureInput, type FigureConvention } from "./cutoff_figure.ts";
+export { levelsFigure, type LevelsFigureInput } from "./levels_figure.ts";
+export {
+  type PageFigure,
+  type PageSpectrum,
+  type PageTable,
+  reportPage,
+  type ReportPageInput,
+} from "./page.ts";
+export { svgToPng } from "./png.ts";

@@ -74,7 +74,8 @@ figure { margin: 1rem 0; } figcaption, caption { font-weight: bold; text-align: 
 #plot { width: 100%; min-width: 38rem; touch-action: pan-y; font-size: 11px; fill: #222222; }
 :focus-visible { outline: 3px solid #0072B2; }
 table { border-collapse: collapse; font-size: 0.9rem; }
-th, td { border-top: 1px solid #8c8c8c; padding: 0.25rem 0.8rem 0.25rem 0; text-align: left; vertical-align: top; }
+th, td { border-top: 1px solid #8c8c8c; padding: 0.25rem 0.8rem 0.25rem 0; text-align: left; vertical-align: top;
+  overflow-wrap: normal; }
 pre { background: #f4f4f4; padding: 0.6rem; white-space: pre-wrap; font-size: 0.85rem; }
 input { width: 7rem; font: inherit; } button { font: inherit; }
 dt { font-weight: bold; } dd { margin: 0 0 0.4rem 1rem; }

@@ -32,6 +32,8 @@ export interface TwoEdges {
   readonly stepEv: number;
   /** Weaker lines: shift up, eV, and intensity relative to the main line. */
   readonly satellites: readonly (readonly [shiftEv: number, intensity: number])[];
+  /** Center of a narrow band below the Fermi level, eV. */
+  readonly bandEv: number;
   /** A valence-band maximum this far below the Fermi level instead of a Fermi edge, eV; null for a metal. */
   readonly gapEv: number | null;
   /** First and last energy relative to the lowest cutoff and to the Fermi level, eV. */
@@ -49,6 +51,7 @@ export const METAL: TwoEdges = {
   dark: 3,
   stepEv: 0.02,
   satellites: [],
+  bandEv: 4,
   gapEv: null,
   marginsEv: [0.8, 1],
 };
@@ -63,14 +66,14 @@ function energies({ patches, biasV, stepEv, marginsEv }: TwoEdges): Float64Array
 
 /** Expected counts, by Simpson's rule over the Gaussian response from the true cutoff on. */
 export function expectedTwoEdges(shape: TwoEdges): { energiesEv: Float64Array; counts: Float64Array } {
-  const { patches, biasV, fwhmEv, temperatureK, top, states, dark, satellites, gapEv } = shape;
+  const { patches, biasV, fwhmEv, temperatureK, top, states, dark, satellites, bandEv, gapEv } = shape;
   const sigma = fwhmEv / 2.354820045;
   const fermiLevel = PHOTON_EV - ANALYZER_EV - biasV;
   const kT = KT_PER_K * temperatureK;
   /** Valence electrons of one line, by energy from its Fermi level: states, a d band, and what fills them. */
   const valence = (x: number): number => {
     if (gapEv !== null) return x < -gapEv ? states * Math.min(3, -x - gapEv) : 0;
-    return states * (1 - 0.1 * x + 3 * Math.exp(-0.5 * ((x + 4) / 0.6) ** 2)) / (1 + Math.exp(x / kT));
+    return states * (1 - 0.1 * x + 3 * Math.exp(-0.5 * ((x + bandEv) / 0.4) ** 2)) / (1 + Math.exp(x / kT));
   };
   const energiesEv = energies(shape);
   const counts = energiesEv.map((energy) => {
