@@ -48,4 +48,6 @@ export * from "./src/scenario/mod.ts";
 export * from "./src/model/mod.ts";
 export * from "./src/sweep/mod.ts";
 export * from "./src/run/mod.ts";
+export * from "./src/compare/mod.ts";
+export * from "./src/plan/mod.ts";
 export * from "./src/report/mod.ts";

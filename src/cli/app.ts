@@ -1,6 +1,8 @@
 import { buildApplication, buildRouteMap, run, text_en } from "@stricli/core";
 import { InputError, VERSION } from "../base/mod.ts";
+import { compareCommand } from "./compare_command.ts";
 import { convertCommand } from "./convert_command.ts";
+import { cellCommand } from "./cell_command.ts";
 import { demoCommand } from "./demo_command.ts";
 import { exitCodeOf, FileError } from "./files.ts";
 import { fitCommand } from "./fit_command.ts";
@@ -8,6 +10,7 @@ import { type Context, GOOD, USAGE } from "./flags.ts";
 import { inspectCommand } from "./inspect_command.ts";
 import type { TerminalStream } from "./progress.ts";
 import { linesCommand } from "./lines_command.ts";
+import { planCommand } from "./plan_command.ts";
 import { reportCommand } from "./report_command.ts";
 import { materialsCommand, validateCommand } from "./scenario_commands.ts";
 import { seriesCommand } from "./series_command.ts";
@@ -27,11 +30,14 @@ const application = buildApplication<Context>(
       simulate: simulateCommand,
       fit: fitCommand,
       convert: convertCommand,
+      compare: compareCommand,
       inspect: inspectCommand,
       series: seriesCommand,
       lines: linesCommand,
+      plan: planCommand,
       validate: validateCommand,
       materials: materialsCommand,
+      cell: cellCommand,
       demo: demoCommand,
       report: reportCommand,
       sweep: sweepCommand,

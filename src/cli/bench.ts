@@ -9,6 +9,7 @@ import { fileURLToPath } from "node:url";
 import { engineData, expectedSpectrum } from "../model/mod.ts";
 import { batchesFor, runHistories } from "../run/mod.ts";
 import { HISTORIES_PER_BATCH, type Tally } from "../transport/mod.ts";
+import { fitBench } from "./bench_fit.ts";
 import { loadScenario } from "./simulate.ts";
 
 const HISTORIES = 8_000_000;
@@ -47,7 +48,8 @@ for (const name of SCENARIOS) {
   const rate = (seconds: number): string => (histories / seconds / 1e6).toFixed(2);
   const events = tally.groups.reduce((sum, group) => sum + group.events.reduce((a, b) => a + b, 0), 0);
   // Both tallies come from the same histories and so the same time: the ratio of variances is that of merits.
-  const { counts, standardErrors, analogueStandardErrors } = expectedSpectrum(resolved, engine, tally);
+  const spectrum = expectedSpectrum(resolved, engine, tally);
+  const { counts, standardErrors, analogueStandardErrors } = spectrum;
   const highest = counts.reduce((a, b) => Math.max(a, b), 0);
   const merits = Array.from(standardErrors).flatMap((error, c) =>
     counts[c] > 0.01 * highest && error > 0 ? [(analogueStandardErrors[c] / error) ** 2] : []
@@ -67,5 +69,6 @@ for (const name of SCENARIOS) {
     }`,
     "",
   ].join("\n"));
+  if (engine.kind === "pair") process.stdout.write(fitBench(resolved, spectrum));
 }
 process.exit(0);

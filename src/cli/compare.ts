@@ -124,7 +124,7 @@ export async function compareFiles(
   const free = options.free.map((path) => freeParameter(path, loaded));
   const named = suspectParameters(loaded);
   const wanted = wantedSuspects(named, options.suspects);
-  const maker = templateMaker(load, {
+  const maker = await templateMaker(load, {
     windowEv: [
       Math.min(...possible.map(({ shiftEv }) => channels.energiesEv[0] + shiftEv)) - MARGIN_EV,
       Math.max(
@@ -144,7 +144,7 @@ export async function compareFiles(
   const placed = placeAxis(base.template, channels, possible);
   const onModel = { ...channels, energiesEv: channels.energiesEv.map((e) => e + placed[0].shiftEv) };
   const startOffsetEv = placed[0].startOffsetEv;
-  const alignment = matchTemplate(base.template, [], onModel, ALIGNED, { offsetEv: startOffsetEv });
+  const alignment = matchTemplate(base.template, [], onModel, ALIGNED, startOffsetEv);
   const isAbsolute = readings.length === 1;
   const parts = testParts(alignment, onModel, base.template, resolved.resolutionFwhmEv);
 
@@ -158,7 +158,7 @@ export async function compareFiles(
   if (freeFamilies === null) return null;
   const freeMatch = free.length === 0
     ? null
-    : matchTemplate(base.template, freeFamilies, onModel, FITTED, { offsetEv: startOffsetEv });
+    : matchTemplate(base.template, freeFamilies, onModel, FITTED, startOffsetEv);
   const fittedParts = freeMatch && testParts(freeMatch, onModel, base.template, resolved.resolutionFwhmEv);
   return {
     measured,

@@ -82,7 +82,7 @@ export function suspectParameters(loaded: LoadedScenario): ScenarioParameter[] {
   const { resolved, scenario } = loaded;
   const { workFunctionEv: w, temperatureK: t, resolutionFwhmEv: fwhm, acceptanceHalfAngleDeg: half } =
     resolved;
-  const { deadTimeS, darkRateCountsPerS } = resolved.acquisition;
+  const { deadTimeS } = resolved.acquisition;
   const deadTimes = [0, 1e-6, 2e-6].filter((value) => value !== deadTimeS);
   const hasSatellites = scenario.light.kind === "lamp" && scenario.light.satellites;
   return [
@@ -120,9 +120,6 @@ export function suspectParameters(loaded: LoadedScenario): ScenarioParameter[] {
       [0, 0.5, 1, 2].filter((value) => value !== resolved.transmissionExponent),
     ),
     plain("acquisition.deadTimeS", deadTimeS, [0, Math.max(2e-6, deadTimeS)], deadTimes),
-    plain("acquisition.darkRateCountsPerS", darkRateCountsPerS, [0, darkRateCountsPerS + 1e4], [
-      darkRateCountsPerS + 10,
-    ]),
     ...overlayer(scenario.sample as unknown as Record<string, unknown>),
     {
       ...plain("sample.surface.patches", 0, [0, 0.6], [0.15, 0.4]),

@@ -160,6 +160,7 @@ function templateOf(
   tally: Tally,
   withGroups: boolean,
 ): Template {
+  const { acquisition } = resolved;
   const spectrum = expectedSpectrum(resolved, engine, tally);
   const [first] = tally.groups;
   const nothing = {
@@ -172,10 +173,11 @@ function templateOf(
     expectedSpectrum(resolved, engine, { batches: 1, histories: group.histories, groups: [group] }).counts;
   return {
     startEv: spectrum.kineticEnergiesEv[0],
-    stepEv: resolved.acquisition.stepEv,
+    stepEv: acquisition.stepEv,
     counts: spectrum.counts,
     direct: countsOf(nothing),
     groups: withGroups ? mergedGroups(tally).map(countsOf) : [],
+    darkCounts: acquisition.darkRateCountsPerS * acquisition.dwellS * acquisition.sweeps,
     cutoffEv: resolved.workFunctionEv + resolved.kineticEnergyShiftEv,
     fermiEdgeEv: fermiEdgeEv(resolved),
   };

@@ -63,7 +63,7 @@ export const convertCommand = buildCommand({
       ),
     );
     const written = await writeFiles(dirname(to), files);
-    const count = regions.length === 1 ? "1 region" : `${regions.length} regions`;
+    const count = `${regions.length} region${regions.length === 1 ? "" : "s"}`;
     this.process.stdout.write(`Wrote ${count} to ${written.join(", ")}\n`);
   },
 });

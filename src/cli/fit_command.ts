@@ -5,9 +5,10 @@ import { readCalibration } from "./calibration_file.ts";
 import { stem, writeFiles } from "./files.ts";
 import { fitFiles, fitJson, type FitStatements } from "./fit.ts";
 import { fitEach } from "./fit_each.ts";
-import { fitSvg } from "./fit_figure.ts";
+import { fitSvg, regionsOnFitAxis } from "./fit_figure.ts";
 import { explanationText, fitText } from "./fit_text.ts";
 import { type Context, count, GOOD, jsonFlag, NOT_TRUSTED, optionalNumber, outFlag, text } from "./flags.ts";
+import { terminalPlot } from "./terminal_plot.ts";
 
 /** Seed of the bootstrap unless one is given. */
 const DEFAULT_SEED = 1;
@@ -38,6 +39,7 @@ type FitFlags = {
   seed?: number;
   each: boolean;
   explain: boolean;
+  plot: boolean;
   strict: boolean;
   out?: string;
   json: boolean;
@@ -123,6 +125,7 @@ export const fitCommand = buildCommand({
       },
       each: isSet("Fit every file by itself: a CSV row each, and with --out a figure each"),
       explain: isSet("Tell in words what was done and why"),
+      plot: isSet("Also draw the spectrum as text of 80 columns"),
       strict: isSet("Doubtful answers end with exit code 1 too"),
       out: {
         ...outFlag,
@@ -148,6 +151,15 @@ export const fitCommand = buildCommand({
     const run = await fitFiles(paths, statements);
     const json = `${JSON.stringify(fitJson(run.result), null, 2)}\n`;
     this.process.stdout.write(flags.json ? json : `${fitText(run.result)}\n`);
+    if (flags.plot && !flags.json) {
+      const { cutoffEv, fermiEdgeEv } = run.result;
+      const marks = ([["secondary cutoff", cutoffEv], ["Fermi edge", fermiEdgeEv]] as const).flatMap((
+        [label, edge],
+      ) => edge === null ? [] : [{ label, energyEv: edge.value }]);
+      for (const region of regionsOnFitAxis(run)) {
+        this.process.stdout.write(`${terminalPlot({ ...region, marks })}\n`);
+      }
+    }
     if (flags.explain && !flags.json) {
       this.process.stdout.write(`What was done and why:\n${explanationText(run.result)}\n`);
     }
@@ -179,8 +191,8 @@ async function fitStatements(flags: FitFlags): Promise<FitStatements> {
       message: `Cannot fit as ${place} must be in ${low}..${high} ${unit}: current value is ${value} ${unit}`,
     }]
   );
-  if (flags.each && (flags.json || flags.explain)) {
-    const other = flags.json ? "--json" : "--explain";
+  if (flags.each && (flags.json || flags.explain || flags.plot)) {
+    const other = flags.json ? "--json" : flags.explain ? "--explain" : "--plot";
     const message = cannot("fit", `${other} must not be given with --each, which prints CSV`, other);
     throw new InputError([{ place: other, message }]);
   }

@@ -6,13 +6,12 @@ import type { FitRun } from "./fit.ts";
 import { shortEv } from "./fit_text.ts";
 
 /**
- * The figure of a fit.
+ * The regions that a fit used, or all when it used none, on the kinetic axis of its edges.
  *
  * @param run The fit.
- * @param title Title of the figure.
- * @returns Text of an SVG file.
+ * @returns Regions, energies ascending.
  */
-export function fitSvg({ regions, result }: FitRun, title: string): Promise<string> {
+export function regionsOnFitAxis({ regions, result }: FitRun): EdgeRegion[] {
   const onFitAxis = (region: EdgeRegion): EdgeRegion => {
     if (result.inputs.axis.kind === "kinetic") return region;
     const photonEnergyEv = result.inputs.photonEnergyEv.value;
@@ -25,7 +24,19 @@ export function fitSvg({ regions, result }: FitRun, title: string): Promise<stri
   const isUsed = (region: EdgeRegion): boolean =>
     result.inputs.regions.some((use) => use.file === region.file && use.region === region.label);
   const used = regions.filter(isUsed);
-  const shown = (used.length > 0 ? used : regions).map(onFitAxis);
+  return (used.length > 0 ? used : regions).map(onFitAxis);
+}
+
+/**
+ * The figure of a fit.
+ *
+ * @param run The fit.
+ * @param title Title of the figure.
+ * @returns Text of an SVG file.
+ */
+export function fitSvg(run: FitRun, title: string): Promise<string> {
+  const { result } = run;
+  const shown = regionsOnFitAxis(run);
   const { workFunctionEv, ionizationEnergyEv, inputs } = result;
   return renderSvg(spectrumFigure({
     title,

@@ -145,7 +145,7 @@ function regionLines(region: RegionSummary, index: number): string[] {
     ["bias", bias],
     ["analyzer work function", unit(region.analyzerWorkFunctionEv, "eV")],
     ["pass energy", unit(region.passEnergyEv, "eV")],
-    ["dwell", `${unit(region.dwellS, "s")}, ${region.sweeps ?? "number not given of"} sweeps`],
+    ["dwell", `${unit(region.dwellS, "s")}, ${plural(region.sweeps, "sweep")}`],
     ...(variables.length > 0 ? [["variables", variables.join(", ")] as const] : []),
     ...(region.columns.length > 0 ? [["further columns", region.columns.join(", ")] as const] : []),
     ...(region.simulated ? [["origin", "simulated, not measured"] as const] : []),
@@ -156,6 +156,10 @@ function regionLines(region: RegionSummary, index: number): string[] {
     `Region ${index + 1}: ${title}`,
     ...rows.map(([name, value]) => `  ${name.padEnd(24)}${value}`),
   ];
+}
+
+function plural(count: number | null, word: string): string {
+  return count === null ? `${word}s not given` : `${count} ${word}${count === 1 ? "" : "s"}`;
 }
 
 function short(value: number): string {

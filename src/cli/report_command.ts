@@ -5,6 +5,12 @@ import { type Context, NOT_TRUSTED, text } from "./flags.ts";
 
 type ReportFlags = { png: boolean; spec: boolean };
 
+/** Figures of other commands. */
+const FIGURE_TITLES: Readonly<Record<string, string>> = {
+  "fit.svg": "Spectrum and both fitted edges (fit.svg)",
+  "spectrum.svg": "Spectrum as simulated (spectrum.svg)",
+};
+
 function isSet(brief: string): { kind: "boolean"; brief: string; default: false; withNegated: false } {
   return { kind: "boolean", brief, default: false, withNegated: false };
 }
@@ -53,7 +59,7 @@ export const reportCommand = buildCommand({
       ...content,
       figures: [
         ...folder.svgs.map(([name, svg]) => ({
-          title: name,
+          title: FIGURE_TITLES[name] ?? name,
           svg,
           isOwn: false,
           description: `The figure ${name}; its values are in the tables of this page`,

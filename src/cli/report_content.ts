@@ -198,9 +198,11 @@ function fitAnswer(fit: FitFile): string[] {
     workFunctionEv === null ? "No work function could be found." : of("work function", workFunctionEv),
     ...(workFunctionEv !== null && wide !== undefined
       ? [
-        `Expanded uncertainty ${
-          decimals(wide.expandedEv, workFunctionEv)
-        } eV (k = 2); for a coverage of 95 % k = ${wide.coverageFactorFor95.toFixed(2)} is needed.`,
+        `Expanded uncertainty ${decimals(wide.expandedEv, workFunctionEv)} eV (k = 2)${
+          wide.coverageFactorFor95 > 2.05
+            ? `; few degrees of freedom: 95 % needs k = ${wide.coverageFactorFor95.toFixed(2)}`
+            : ", about 95 % coverage"
+        }.`,
       ]
       : []),
     ...(valenceBandMaximumEv !== null && ionizationEnergyEv !== null

@@ -1,4 +1,5 @@
 import { cannot, InputError, VERSION } from "../base/mod.ts";
+import { materialFrom } from "../data/mod.ts";
 import { decodeText, readSpectrumCsv, writeSpectrumCsv } from "../formats/mod.ts";
 import { countSpectrum, engineData, type ExpectedSpectrum, expectedSpectrum } from "../model/mod.ts";
 import { renderSvg, spectrumFigure } from "../report/mod.ts";
@@ -135,8 +136,11 @@ export function scenarioLoader(
   };
   return async (overrides) => {
     const scenario = parseScenario(text, path, overrides);
-    const { densityOfStatesFile, meanFreePathFile } = scenario.sample;
+    const { densityOfStatesFile, materialFile, meanFreePathFile } = scenario.sample;
     const named: UserTables = {
+      ...(materialFile !== null && {
+        material: materialFrom(await readTable(beside(path, materialFile)), beside(path, materialFile)),
+      }),
       ...(densityOfStatesFile !== null && {
         densityOfStates: await table(densityOfStatesFile, "states_per_ev"),
       }),

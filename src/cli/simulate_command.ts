@@ -23,6 +23,7 @@ import {
   spectrumCsv,
   spectrumSvg,
 } from "./simulate.ts";
+import { terminalPlot } from "./terminal_plot.ts";
 
 type SimulateFlags = {
   out?: string;
@@ -33,6 +34,7 @@ type SimulateFlags = {
   replicate?: number;
   workers?: number;
   set?: readonly string[];
+  plot: boolean;
   json: boolean;
 };
 
@@ -98,6 +100,12 @@ export const simulateCommand = buildCommand({
       },
       workers: workersFlag,
       set: setFlag,
+      plot: {
+        kind: "boolean",
+        brief: "Also draw the spectrum as text of 80 columns",
+        default: false,
+        withNegated: false,
+      },
       json: jsonFlag,
     },
   },
@@ -132,11 +140,23 @@ export const simulateCommand = buildCommand({
       `  Monte Carlo standard error at most ${
         (100 * result.worstRelativeStandardError).toPrecision(2)
       } % above a tenth of that`,
+      ...(flags.plot ? [simulationPlot(simulation)] : []),
       `Wrote ${written.join(", ")}`,
       "",
     ].join("\n"));
   },
 });
+
+function simulationPlot({ counts, expected, result }: Simulation): string {
+  return terminalPlot({
+    energiesEv: expected.kineticEnergiesEv,
+    counts,
+    marks: [
+      { label: "secondary cutoff", energyEv: result.truth.cutoffEv },
+      { label: "Fermi edge", energyEv: result.truth.fermiEdgeEv },
+    ],
+  });
+}
 
 /** Parses `0.5%` as 0.005; a number without the sign could mean either. */
 function precision(text: string): number {

@@ -61,7 +61,8 @@ export interface Match {
 
 /** Offsets that a fit may add to where the axis was placed, eV. */
 export const MOST_OFFSET_EV = 1.5;
-const GAIN_RANGE = [0.9, 1.1] as const;
+/** Gains that a fit may take. */
+export const GAIN_RANGE = [0.9, 1.1] as const;
 const MOST_EXTRA_FWHM_EV = 2;
 /** Relative step of the one derivative that is taken by differences. */
 const WIDTH_STEP = 1e-3;
@@ -79,7 +80,7 @@ const LEAST_VARIANCE = 0.05;
  * @param families Free parameters of the scenario.
  * @param channels Measured counts.
  * @param freedom What of the instrument is free.
- * @param start Offset and values to start from. Default: no offset, values of the base.
+ * @param offsetEv Offset to start from, eV. Values start from the node of each family that fits best by itself.
  * @returns The match.
  * @throws {RangeError} If all expected or all measured counts of a region are zero.
  */
@@ -88,10 +89,9 @@ export function matchTemplate(
   families: readonly TemplateFamily[],
   channels: MatchChannels,
   freedom: MatchFreedom,
-  start: { readonly offsetEv?: number; readonly values?: readonly number[] } = {},
+  offsetEv = 0,
 ): Match {
   const model = matchedModel(base, families, channels);
-  const offsetEv = start.offsetEv ?? 0;
   const parameters: FitParameter[] = model.names.map((name, index) => {
     if (index === OFFSET) {
       return { name, start: offsetEv, lower: -MOST_OFFSET_EV, upper: MOST_OFFSET_EV, scale: 0.01 };
@@ -117,9 +117,8 @@ export function matchTemplate(
       const value = startIntensity(base, channels, index - FIRST_INTENSITY, offsetEv);
       return { name, start: value, lower: 1e-6 * value, scale: value };
     }
-    const { lower, upper, baseValue } = family;
-    const value = start.values?.[index - FIRST_INTENSITY - channels.regionCount] ?? baseValue;
-    return { name, start: value, lower, upper, scale: upper - lower };
+    const { lower, upper } = family;
+    return { name, start: startValue(base, family, channels, offsetEv), lower, upper, scale: upper - lower };
   });
   const fit = minimizePoisson({
     parameters,
@@ -201,6 +200,38 @@ function noiseOfParameters(
   });
 }
 
+/** The node that fits best with the intensities of the base scaled to the counts. */
+function startValue(
+  base: Template,
+  family: TemplateFamily,
+  channels: MatchChannels,
+  offsetEv: number,
+): number {
+  const model = matchedModel(base, [family], channels);
+  const parameters = new Float64Array(model.names.length);
+  const expected = new Float64Array(channels.counts.length);
+  const measured = channels.counts.reduce((sum, count) => sum + count, 0);
+  let best = { value: family.baseValue, deviance: Infinity };
+  for (const value of family.values) {
+    if (value < family.lower || value > family.upper) continue;
+    parameters.fill(0);
+    parameters[OFFSET] = offsetEv;
+    parameters[GAIN] = 1;
+    for (let r = 0; r < channels.regionCount; r++) {
+      parameters[FIRST_INTENSITY + r] = startIntensity(base, channels, r, offsetEv);
+    }
+    parameters[FIRST_INTENSITY + channels.regionCount] = value;
+    model.expected(parameters, expected);
+    const scale = measured / expected.reduce((sum, mean) => sum + mean, 0);
+    const deviance = channels.counts.reduce((sum, count, i) => {
+      const mean = Math.max(LEAST_VARIANCE, scale * expected[i]);
+      return sum + (count > 0 ? 2 * count * Math.log(count / mean) : 0);
+    }, 0);
+    if (deviance < best.deviance) best = { value, deviance };
+  }
+  return best.value;
+}
+
 /** The intensity that gives a region as many expected counts as it has. */
 function startIntensity(base: Template, channels: MatchChannels, region: number, offsetEv: number): number {
   const curve = { ...base, values: base.counts };
@@ -208,14 +239,14 @@ function startIntensity(base: Template, channels: MatchChannels, region: number,
   let expected = 0;
   channels.regions.forEach((of, i) => {
     if (of !== region) return;
-    measured += channels.counts[i];
-    expected += curveAt(curve, channels.energiesEv[i] - offsetEv);
+    measured += channels.counts[i] - base.darkCounts;
+    expected += curveAt(curve, channels.energiesEv[i] - offsetEv) - base.darkCounts;
   });
   if (!(measured > 0 && expected > 0)) {
     throw new RangeError(
       cannot(
         "match a spectrum",
-        `measured and expected counts of region ${region + 1} must be > 0`,
+        `measured and expected counts of region ${region + 1} must be above the dark counts`,
         `${measured} measured, ${expected.toPrecision(3)} expected`,
       ),
     );

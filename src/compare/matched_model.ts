@@ -41,7 +41,7 @@ export const FIRST_INTENSITY = 4;
 const SIGMAS_PER_FWHM = 1 / (2 * Math.sqrt(2 * Math.LN2));
 
 /**
- * Expected counts `intensity T((E - offset)/gain) + background`: the gain about the Fermi edge, T folded with the extra
+ * Expected counts `intensity T((E - offset)/gain) + dark + background`, T without its dark counts: the gain about the Fermi edge, T folded with the extra
  * Gaussian and changed by the values of the families, its edges moved to where these put them.
  *
  * Changes of several families add up; what they do together beyond that is left out.
@@ -111,10 +111,14 @@ export function matchedModel(
     fold(parameters);
   }
 
+  function electronsAt(parameters: Float64Array, i: number): number {
+    return curveAt(folded, onBase(parameters, i)) - base.darkCounts;
+  }
+
   function expected(parameters: Float64Array, out: Float64Array): void {
     evaluate(parameters);
     for (let i = 0; i < n; i++) {
-      out[i] = parameters[FIRST_INTENSITY + regions[i]] * curveAt(folded, onBase(parameters, i)) +
+      out[i] = parameters[FIRST_INTENSITY + regions[i]] * electronsAt(parameters, i) + base.darkCounts +
         parameters[BACKGROUND];
     }
   }
@@ -142,7 +146,7 @@ export function matchedModel(
       addMotion(parameters, (i) => rate * (unscaled(parameters, i) - base.fermiEdgeEv), out);
     } else if (index < firstValue) {
       for (let i = 0; i < n; i++) {
-        if (regions[i] === index - FIRST_INTENSITY) out[i] = curveAt(folded, onBase(parameters, i));
+        if (regions[i] === index - FIRST_INTENSITY) out[i] = electronsAt(parameters, i);
       }
     } else {
       const f = index - firstValue;

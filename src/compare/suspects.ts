@@ -1,11 +1,11 @@
 import { chiSquareProbability } from "../fit/mod.ts";
-import { type Match, type MatchedValue, type MatchFreedom, matchTemplate } from "./match.ts";
+import { GAIN_RANGE, type Match, type MatchedValue, type MatchFreedom, matchTemplate } from "./match.ts";
 import type { MatchChannels } from "./matched_model.ts";
 import type { Template, TemplateFamily } from "./template.ts";
 
 /** One change of the scenario, tried alone. */
 export interface Suspect {
-  /** What is changed: a path of the scenario, or `gain of the energy scale`. */
+  /** What is changed: a path of the scenario, the gain of the energy scale or a constant background. */
   readonly name: string;
   /** Unit of the value; empty for a number. */
   readonly unit: string;
@@ -14,7 +14,7 @@ export interface Suspect {
   /** Best value with its uncertainty; null in the uncertainty at the end of the range. */
   readonly best: MatchedValue;
   /** Range that was tried. */
-  readonly range: readonly [number, number];
+  readonly range: readonly [lower: number, upper: number];
   /** Chi-square with the change. */
   readonly chiSquare: number;
   /** Drop of the deviance, divided by {@link SuspectReport.overdispersion} and by the design effect. */
@@ -45,8 +45,9 @@ export interface SuspectReport {
   readonly conclusion: string;
 }
 
-/** Name of the suspect that is no parameter of the scenario. */
+/** Names of the suspects that are no parameters of the scenario. */
 export const GAIN_SUSPECT = "gain of the energy scale";
+export const BACKGROUND_SUSPECT = "constant background";
 
 /** Chance of naming a suspect where there is none, all suspects together (chosen). */
 export const FAMILY_FALSE_ALARM = 0.01;
@@ -82,26 +83,32 @@ export function rankSuspects(
   channels: MatchChannels,
   startOffsetEv: number,
 ): SuspectReport {
-  const plain = matchTemplate(base, [], channels, NOTHING, { offsetEv: startOffsetEv });
+  const plain = matchTemplate(base, [], channels, NOTHING, startOffsetEv);
   const offsetEv = plain.values[0].value;
   const tried = [
     ...families.map((family) => ({
       name: family.name,
+      parameter: family.name,
       unit: family.unit,
       scenarioValue: family.baseValue,
       range: [family.lower, family.upper] as const,
-      match: bestMatch(
-        family.values.filter((v) => v >= family.lower && v <= family.upper).map((value) => () =>
-          matchTemplate(base, [family], channels, NOTHING, { offsetEv, values: [value] })
-        ),
-      ),
+      match: matchTemplate(base, [family], channels, NOTHING, offsetEv),
     })),
     {
       name: GAIN_SUSPECT,
+      parameter: "gain",
       unit: "",
       scenarioValue: 1,
-      range: [0.9, 1.1] as const,
-      match: matchTemplate(base, [], channels, { ...NOTHING, gain: true }, { offsetEv }),
+      range: GAIN_RANGE,
+      match: matchTemplate(base, [], channels, { ...NOTHING, gain: true }, offsetEv),
+    },
+    {
+      name: BACKGROUND_SUSPECT,
+      parameter: "backgroundCounts",
+      unit: "counts",
+      scenarioValue: 0,
+      range: [-Infinity, Infinity] as const,
+      match: matchTemplate(base, [], channels, { ...NOTHING, background: true }, offsetEv),
     },
   ];
   const reduced = (match: Match): number => match.chiSquare / match.degreesOfFreedom;
@@ -110,8 +117,8 @@ export function rankSuspects(
   const penalty = (k: number): number => 2 * k + 2 * k * (k + 1) / (n - k - 1);
   const extra = penalty(tried[0].match.values.length) - penalty(plain.values.length);
   const misfit = plain.chiSquare - plain.degreesOfFreedom;
-  const suspects = tried.map(({ name, unit, scenarioValue, range, match }): Suspect => {
-    const found = match.values.find((value) => value.name === (name === GAIN_SUSPECT ? "gain" : name))!;
+  const suspects = tried.map(({ name, parameter, unit, scenarioValue, range, match }): Suspect => {
+    const found = match.values.find((value) => value.name === parameter)!;
     const design = found.standardUncertainty === null || found.fromCounting === null
       ? 1
       : (found.standardUncertainty / found.fromCounting) ** 2;
@@ -129,9 +136,9 @@ export function rankSuspects(
       chance: Math.min(1, tried.length * chiSquareProbability(drop, 1)),
       converged: match.converged,
     };
-  }).sort((a, b) => a.criterionChange - b.criterionChange);
+  }).sort((a, b) => Number(b.converged) - Number(a.converged) || a.criterionChange - b.criterionChange);
   const best = suspects[0];
-  const isFound = best.chance < FAMILY_FALSE_ALARM;
+  const isFound = best.converged && best.chance < FAMILY_FALSE_ALARM;
   const named = isFound
     ? suspects.filter((s) =>
       s.criterionChange <= best.criterionChange + SUPPORTED && s.chance < FAMILY_FALSE_ALARM
@@ -174,11 +181,4 @@ function widened(value: MatchedValue, name: string, overdispersion: number): Mat
     fromCounting: times(value.fromCounting),
     fromSimulation: factor * value.fromSimulation,
   };
-}
-
-/** The match of the lowest deviance among several starts, converged ones first. */
-function bestMatch(starts: readonly (() => Match)[]): Match {
-  return starts.map((start) => start()).sort((a, b) =>
-    Number(b.converged) - Number(a.converged) || a.deviance - b.deviance
-  )[0];
 }

@@ -13,6 +13,8 @@ export interface Template {
   readonly direct: Float64Array;
   /** Expected counts from each of several equal groups of histories, shape (groups)(n); empty where they are not needed. */
   readonly groups: readonly Float64Array[];
+  /** Dark counts of a channel, which do not grow with the intensity. */
+  readonly darkCounts: number;
   /** Where the secondary cutoff is recorded, eV. */
   readonly cutoffEv: number;
   /** Where the Fermi edge is recorded, eV. */
@@ -56,8 +58,8 @@ export interface TemplateFamily {
   readonly fermiEdgesEv: readonly number[];
 }
 
-/** Scattered counts below this share of their highest are left as in the base: a ratio of noise. */
-const LEAST_SCATTERED = 1e-3;
+/** Scattered counts below this share of their highest change by the ratio of the sums: their own is a ratio of noise. */
+const LEAST_SCATTERED = 1e-4;
 /** Polynomials that may describe a ratio of scattered counts, and how significant each must be to be kept. */
 const MOST_POLYNOMIALS = 13;
 const SIGNIFICANT = 3;
@@ -69,7 +71,8 @@ const SMALL_NOISE = 0.05;
  *
  * Spectra are registered first: the energy axis of each node is mapped straight so that its two edges, known from its
  * scenario, fall on those of the base. What is left changes smoothly with the parameter and is interpolated channel by
- * channel by Lagrange's polynomial through the nodes, and so are the positions of the edges.
+ * channel by Lagrange's polynomial through the nodes, and so are the positions of the edges. Every node is scaled to
+ * the same sum of counts, since the intensity is free in every match.
  *
  * Where a parameter changes the histories, common random numbers keep little of their promise: after the first different
  * event two histories are strangers. Then the ratio of scattered counts of the pair (node, base) is taken, since it varies
@@ -148,7 +151,8 @@ function changeOf(base: Template, template: Template, reference: Template | null
   if (template === base) return { mean: new Float64Array(base.counts.length), groups: [] };
   const onBase = registration(template, base);
   if (reference === null) {
-    return { mean: minus(onBase(template.counts), base.counts), groups: [] };
+    const mean = minus(onBase(template.counts), base.counts);
+    return { mean: ofEqualSum(base, mean, scaleOf(base, mean)), groups: [] };
   }
   const direct = minus(onBase(template.direct), base.direct);
   const scattered = minus(base.counts, base.direct);
@@ -156,7 +160,8 @@ function changeOf(base: Template, template: Template, reference: Template | null
     const above = onBase(minus(node, template.direct));
     const below = minus(of, reference.direct);
     const least = LEAST_SCATTERED * below.reduce((a, b) => Math.max(a, b), 0);
-    return above.map((value, i) => (below[i] > least ? value / below[i] - 1 : 0));
+    const overall = sumOf(above) / sumOf(below) - 1;
+    return above.map((value, i) => (below[i] > least ? value / below[i] - 1 : overall));
   };
   let ratio = ratioOf(template.counts, reference.counts);
   let groups: readonly Float64Array[] = template.groups.map((group, g) =>
@@ -168,13 +173,28 @@ function changeOf(base: Template, template: Template, reference: Template | null
     0,
   ) / noise.length;
   if (share > SMALL_NOISE) {
-    const smooth = significantPart(ratio, groups, noise);
+    const smooth = significantPart(ratio, groups, noise, scattered);
     ratio = smooth.mean;
     groups = smooth.groups;
   }
   const toChange = (values: Float64Array): Float64Array =>
     values.map((value, i) => direct[i] + scattered[i] * value);
-  return { mean: toChange(ratio), groups: groups.map(toChange) };
+  const mean = toChange(ratio);
+  const scale = scaleOf(base, mean);
+  return {
+    mean: ofEqualSum(base, mean, scale),
+    groups: groups.map((group) => ofEqualSum(base, toChange(group), scale)),
+  };
+}
+
+/** By how much a changed spectrum must be multiplied to have as many counts as the base. */
+function scaleOf({ counts }: Template, change: Float64Array): number {
+  return sumOf(counts) / (sumOf(counts) + sumOf(change));
+}
+
+/** A change after the changed spectrum was scaled: intensities are free, and without them changes are smoother. */
+function ofEqualSum({ counts }: Template, change: Float64Array, scale: number): Float64Array {
+  return change.map((value, i) => scale * value + (scale - 1) * counts[i]);
 }
 
 /** Reads values of a template at the energies of the base, both edges in line. */
@@ -193,11 +213,13 @@ function significantPart(
   ratio: Float64Array,
   groups: readonly Float64Array[],
   errors: Float64Array,
+  scattered: Float64Array,
 ): Change {
-  const weights = errors.map((error) => (error > 0 ? 1 / (error * error) : 0));
+  const least = LEAST_SCATTERED * scattered.reduce((a, b) => Math.max(a, b), 0);
+  const weights = errors.map((error, i) => (error > 0 && scattered[i] > least ? 1 / (error * error) : 0));
   const polynomials = orthogonalPolynomials(weights);
-  const mean = new Float64Array(ratio.length);
-  const parts = groups.map(() => new Float64Array(ratio.length));
+  const mean = ratio.map((value, i) => (weights[i] === 0 ? value : 0));
+  const parts = groups.map((group) => group.map((value, i) => (weights[i] === 0 ? value : 0)));
   const product = (a: Float64Array, b: Float64Array): number =>
     a.reduce((sum, value, i) => sum + weights[i] * value * b[i], 0);
   for (const polynomial of polynomials) {
@@ -249,6 +271,10 @@ function standardErrors(groups: readonly Float64Array[], mean: Float64Array): Fl
   const squares = new Float64Array(mean.length);
   for (const group of groups) group.forEach((value, i) => squares[i] += (value - mean[i]) ** 2);
   return squares.map((sum) => Math.sqrt(sum / (groups.length * (groups.length - 1))));
+}
+
+function sumOf(values: Float64Array): number {
+  return values.reduce((sum, value) => sum + value, 0);
 }
 
 function minus(a: Float64Array, b: Float64Array): Float64Array {

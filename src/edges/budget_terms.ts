@@ -212,8 +212,11 @@ function shapeUncertaintyEv(
   hasRamp: boolean,
 ): number {
   const { value, standardUncertainty } = cutoff.sigmaEv;
-  const known = fermi?.sigmaEv ??
-    { value: (resolutionFwhmEv ?? 0) / FWHM_PER_SIGMA, standardUncertainty: 0 };
+  const stated = { value: (resolutionFwhmEv ?? 0) / FWHM_PER_SIGMA, standardUncertainty: 0 };
+  const seen = fermi?.sigmaEv ?? stated;
+  // A stated resolution that the Fermi edge confirms is known better than what the edge alone tells.
+  const isConfirmed = stated.value > 0 && Math.abs(stated.value - seen.value) <= 2 * seen.standardUncertainty;
+  const known = isConfirmed ? stated : seen;
   const excess = value * value - known.value ** 2;
   const noise = known.value === 0
     ? 0

@@ -40,9 +40,10 @@ export const STEP_PARAMETERS = 7;
  * @returns Position, sigma, three parts of the top, two of the background.
  */
 export function stepParameters(window: Float64Array, start: CutoffStart): FitParameter[] {
-  const { positionEv, sigmaEv, top, base } = start;
+  const { positionEv, top, base } = start;
   const last = window[window.length - 1];
   const stepEv = (last - window[0]) / (window.length - 1);
+  const sigmaEv = Math.min(2, Math.max(0.2 * stepEv, start.sigmaEv));
   return [
     { name: "position", start: positionEv, lower: window[0], upper: last, scale: sigmaEv },
     { name: "sigma", start: sigmaEv, lower: 0.15 * stepEv, upper: 2, scale: sigmaEv },

@@ -88,7 +88,7 @@ export function fitFermiEdge(
     { name: "position", start: center, lower: window[0], upper: window[window.length - 1], scale: 0.05 },
     {
       name: "sigma",
-      start: options.startSigmaEv,
+      start: Math.max(0.2 * stepEv, options.startSigmaEv),
       lower: 0.15 * stepEv,
       upper: 1,
       scale: options.startSigmaEv,

@@ -95,7 +95,7 @@ export function fitPatches(
   const starts = [
     ...near.map((rise) => [Math.min(rise, position), Math.abs(rise - position)] as const),
     ...[TRIED_EV, TRIED_WIDTHS * sigma].map((distance) => [position - 0.3 * distance, distance] as const),
-  ].filter(([lower, separation]) => lower > window[0] && separation > 2 * stepEv);
+  ].filter(([lower, separation]) => lower > window[0] && separation > 2 * stepEv && separation < 2 * NEAR_EV);
   let best: { readonly problem: PoissonProblem; readonly fit: PoissonFit } | null = null;
   for (const [lower, separation] of starts) {
     const problem = {

@@ -91,7 +91,7 @@ function fitLine(
   const floor = meanCounts(window, data, window[window.length - 1] - 0.2, Infinity);
   const parameters: FitParameter[] = [
     { name: "position", start: onset, lower: window[0], upper: window[window.length - 1], scale: 0.05 },
-    { name: "sigma", start: 0.1, lower: 0.15 * stepEv, upper: 1, scale: 0.1 },
+    { name: "sigma", start: Math.max(0.1, 0.2 * stepEv), lower: 0.15 * stepEv, upper: 1, scale: 0.1 },
     { name: "steepness", start: slope, lower: 0, scale: slope },
     { name: "base", start: Math.max(floor, 0.1), lower: 0, scale: Math.max(floor, 1) },
     ...copied.parameters,

@@ -106,8 +106,8 @@ export function judgeCutoff(
   const { energiesEv, counts } = region;
   const position = cutoff.positionEv.value;
   const sigma = cutoff.sigmaEv.value;
-  const below = meanCounts(energiesEv, counts, position - 0.5, position - 4 * sigma);
-  const above = meanCounts(energiesEv, counts, position + 2 * sigma, position + 0.5);
+  const below = meanCounts(energiesEv, counts, position - 4 * sigma - 0.5, position - 3.5 * sigma);
+  const above = meanCounts(energiesEv, counts, position + 2 * sigma, position + 2 * sigma + 0.5);
   if (position - energiesEv[0] < 4 * sigma) {
     findings.fail("the window starts on the cutoff itself; start at least 0.3 eV lower");
   } else if (!(below < 0.4 * above)) {

@@ -26,6 +26,9 @@ export interface ExpectedSpectrum {
   readonly levels: readonly ExpectedLevel[];
 }
 
+/** The power law of the transmission is not followed to slower electrons, eV. */
+const SLOWEST_EV = 1e-3;
+
 /**
  * Turns a tally into expected counts: resolution, transmission, flux, dead time.
  *
@@ -51,10 +54,12 @@ export function expectedSpectrum(
   const response = engine.kind === "pair"
     ? pairResponse(resolved, engine, kineticEnergiesEv)
     : fastResponse(resolved, engine, kineticEnergiesEv);
-  const referenceEv = resolved.photonEnergyEv + resolved.kineticEnergyShiftEv;
+  // The transmission is 1 at the Fermi edge, or at 1 eV where the analyzer would not record that.
+  const fermiEdgeEv = resolved.photonEnergyEv + resolved.kineticEnergyShiftEv;
+  const referenceEv = fermiEdgeEv > 0 ? fermiEdgeEv : 1;
   const ratePerDensity = kineticEnergiesEv.map((energyEv) => {
     if (energyEv <= 0) return 0; // the analyzer records nothing at or below zero kinetic energy
-    const transmission = (energyEv / referenceEv) ** -resolved.transmissionExponent;
+    const transmission = (Math.max(energyEv, SLOWEST_EV) / referenceEv) ** -resolved.transmissionExponent;
     return response.photonsPerS * resolved.detectionFraction * transmission *
       windowEv(resolved.resolutionFwhmEv);
   });

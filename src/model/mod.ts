@@ -12,5 +12,6 @@ export {
   type PairEngineData,
   pairEngineData,
 } from "./engine.ts";
+export { type CellCurve, cellCurve, type CellSettings, collectingAll, noisyCurrents } from "./cell.ts";
 export { countSpectrum, type ExpectedSpectrum, expectedSpectrum } from "./expected.ts";
 export type { ExpectedLevel } from "./fast.ts";

@@ -7,9 +7,9 @@ export interface PlanFacts {
   readonly title: string;
   /** Photon energy of the main line, eV. */
   readonly photonEnergyEv: number;
-  /** Work function that the simulation puts in, eV. */
-  readonly workFunctionEv: number;
-  /** Where the cutoff is expected, eV as recorded; not recorded where <= 0. */
+  /** Work function that the simulation puts in, eV; null where parts of the surface differ. */
+  readonly workFunctionEv: number | null;
+  /** Where the lowest cutoff is expected, eV as recorded; not recorded where <= 0. */
   readonly cutoffEv: number;
   /** Where the Fermi level is expected, eV as recorded. */
   readonly fermiLevelEv: number;
@@ -47,11 +47,13 @@ export interface PlanFacts {
  */
 export function planFacts(resolved: ResolvedScenario): PlanFacts {
   const { acquisition, kineticEnergyShiftEv } = resolved;
+  const workFunctionsEv = resolved.surface.map((part) => part.workFunctionEv);
+  const lowestEv = Math.min(...workFunctionsEv);
   return {
     title: resolved.title,
     photonEnergyEv: resolved.photonEnergyEv,
-    workFunctionEv: resolved.workFunctionEv,
-    cutoffEv: resolved.workFunctionEv + kineticEnergyShiftEv,
+    workFunctionEv: workFunctionsEv.every((one) => one === lowestEv) ? lowestEv : null,
+    cutoffEv: lowestEv + kineticEnergyShiftEv,
     fermiLevelEv: resolved.photonEnergyEv + kineticEnergyShiftEv,
     biasV: resolved.biasV,
     analyzerWorkFunctionEv: resolved.analyzerWorkFunctionEv,

@@ -6,7 +6,7 @@ import type { PlannedWindow } from "./run_plan.ts";
 /** Warnings of a scenario about its own window, which a plan replaces. */
 const OF_THE_WINDOW = ["cutoff-outside", "fermi-edge-outside"];
 /** What a fit says of every lamp and every axis, and what a plan settles itself. */
-const OF_EVERY_FIT = ["lamp-satellites", "scale-not-included", "photon-energy-uncertainty"];
+const SAID_ELSEWHERE = ["lamp-satellites", "scale-not-included", "photon-energy-uncertainty", "dead-time"];
 /** Share lost to dead time that is worth a word (chosen). */
 const DEAD_SHARE = 0.02;
 /** Full width at half maximum of the derivative of the Fermi function, `4 ln(1 + sqrt 2) kT`. */
@@ -30,10 +30,10 @@ export function findings(
   const found: Notice[] = facts.warnings.filter(({ code }) => !OF_THE_WINDOW.includes(code)).slice();
   const say = (code: string, message: string, place = ""): void => void found.push({ code, message, place });
   prediction.reasons.forEach((reason) => say("fit-doubts", `fit of the simulated spectrum: ${reason}`));
-  found.push(
-    ...prediction.warnings.filter(({ code }) => !OF_EVERY_FIT.includes(code) && code !== "dead-time"),
-  );
   const { numbers } = prediction;
+  if (numbers !== null) {
+    found.push(...prediction.warnings.filter(({ code }) => !SAID_ELSEWHERE.includes(code)));
+  }
   if (numbers?.offsetEv && numbers.floorEv > numbers.systematicEv) {
     say(
       "fit-off",

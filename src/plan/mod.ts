@@ -6,7 +6,22 @@
  * @module
  */
 export { type PlanFacts, planFacts, type Rates, ratesFrom } from "./facts.ts";
-export { type EdgePrediction, type Prediction, predictRun, type RunWindow } from "./predict.ts";
+export {
+  type EdgePrediction,
+  type PredictedNumbers,
+  type Prediction,
+  predictRun,
+  type RunWindow,
+} from "./predict.ts";
 export { leastTimeS, optimalShares, uncertaintyAfter } from "./split.ts";
-export { planRun, type PlanTarget, type RunPlan, type RunStatus } from "./run_plan.ts";
+export {
+  comparePlans,
+  type PlannedWindow,
+  planRun,
+  type PlanTarget,
+  type RunPlan,
+  type RunStatus,
+  type TimeLimit,
+} from "./run_plan.ts";
+export { attenuated, type LightPlan, planWithinRate } from "./rate_limit.ts";
 export { replicateRun, type Replicates } from "./replicates.ts";

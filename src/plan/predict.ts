@@ -62,7 +62,10 @@ export interface PredictedNumbers {
   readonly systematicEv: number;
   /** The terms of that, largest first, eV. */
   readonly systematicTerms: readonly { readonly name: string; readonly standardUncertaintyEv: number }[];
-  /** Fit of the expected spectrum less what was put in, eV, with the uncertainty from the number of histories. */
+  /**
+   * Fit of the expected spectrum less what was put in, eV, with the uncertainty from the number of histories; null where
+   * no single work function was put in or none is fitted.
+   */
   readonly offsetEv: Estimate | null;
   /** What does not shrink with time, eV: the systematic part, or the offset beyond its noise where that is larger. */
   readonly floorEv: number;
@@ -111,7 +114,7 @@ export function predictRun(rates: Rates, facts: PlanFacts, windows: readonly Run
   ].filter((term) => term.standardUncertaintyEv > 0)
     .sort((a, b) => b.standardUncertaintyEv - a.standardUncertaintyEv);
   const systematicEv = Math.hypot(...systematicTerms.map((term) => term.standardUncertaintyEv));
-  const offsetEv = quantity === "workFunctionEv"
+  const offsetEv = quantity === "workFunctionEv" && facts.workFunctionEv !== null
     ? {
       value: answer.value - facts.workFunctionEv,
       standardUncertainty: Math.hypot(edges[0].monteCarloEv, edges[1].monteCarloEv),

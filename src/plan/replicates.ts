@@ -9,15 +9,15 @@ export interface Replicates {
   readonly valuesEv: Float64Array;
   /** Fits that failed. */
   readonly failures: number;
-  /** Mean of the others less what was put in, eV. */
-  readonly meanOffsetEv: number;
+  /** Mean of the others, eV. */
+  readonly meanEv: number;
   /** Standard deviation, eV. */
   readonly scatterEv: number;
   /** That over the predicted statistical uncertainty. */
   readonly ratio: number;
   /** Standard error of the ratio from the number of runs: `ratio / sqrt(2 (n - 1))`, normal values. */
   readonly ratioStandardError: number;
-  /** Root mean square of the uncertainties that the fits report, systematic parts included, eV. */
+  /** Median of the uncertainties that the fits report, systematic parts included, eV. */
   readonly reportedEv: number;
 }
 
@@ -53,7 +53,7 @@ export function replicateRun(
       countsPerS: rates.countsPerS.slice(from, past),
     };
   });
-  let reported = 0;
+  const reported: number[] = [];
   const valuesEv = new Float64Array(runs).map((_, run) => {
     const generator = new Xoshiro128pp(streamState(seed, "replicate", run));
     const answer = measureParts(
@@ -68,7 +68,7 @@ export function replicateRun(
         )
       ),
     )[quantity];
-    reported += (answer?.standardUncertainty ?? 0) ** 2;
+    if (answer !== null) reported.push(answer.standardUncertainty);
     return answer?.value ?? NaN;
   });
   const good = valuesEv.filter((value) => !Number.isNaN(value));
@@ -79,10 +79,10 @@ export function replicateRun(
   return {
     valuesEv,
     failures: runs - good.length,
-    meanOffsetEv: quantity === "workFunctionEv" ? mean - facts.workFunctionEv : NaN,
+    meanEv: mean,
     scatterEv,
     ratio,
     ratioStandardError: ratio / Math.sqrt(2 * (good.length - 1)),
-    reportedEv: Math.sqrt(reported / good.length),
+    reportedEv: reported.sort((a, b) => a - b)[Math.floor(reported.length / 2)] ?? NaN,
   };
 }

@@ -9,8 +9,18 @@ import { leastTimeS, optimalShares, uncertaintyAfter } from "./split.ts";
 export interface PlanTarget {
   /** Wanted combined standard uncertainty of the work function, eV, > 0. */
   readonly targetEv: number;
-  /** Limits of the time, s, each with its name; the least counts. */
-  readonly limits: readonly { readonly name: string; readonly timeS: number }[];
+  /** Limits of the time; the least counts. */
+  readonly limits: readonly TimeLimit[];
+}
+
+/** A limit of the time. */
+export interface TimeLimit {
+  /** What limits it, such as `--hours`. */
+  readonly name: string;
+  /** Time, s, > 0. */
+  readonly timeS: number;
+  /** `true` where it is a dose of light, so that less light extends it. */
+  readonly byLight: boolean;
 }
 
 /** `reached`; `limited` by the time that is allowed; stopped by the `floor`, which no time lowers; or no fit at all. */
@@ -62,11 +72,17 @@ interface Span {
 
 /** More sweeps than one show a drift; a run has at least so many (chosen). */
 const LEAST_SWEEPS = 2;
+/** Supplies need some tens of milliseconds to settle after a step: no shorter dwell where time allows (chosen), s. */
+const LEAST_DWELL_S = 0.05;
 /** Where the floor is above the target, time is spent until counting adds 5 % to the floor: a third of it. */
 const SHARE_OF_FLOOR = 1 / 3;
 /** How far below and above the Fermi edge itself the window reaches without satellites, eV: as far as the fit looks. */
 const ABOVE_EDGE_EV = 0.6;
 const BEYOND_SATELLITE_EV = 0.8;
+/** How far above the Fermi level a window reaches that shows that there is no Fermi edge, eV. */
+const BEYOND_LEVEL_EV = 0.2;
+/** A plan takes no longer than a year, s. */
+const MOST_TIME_S = 3.2e7;
 /** The part of a spectrum around the cutoff in which it is looked for, eV. */
 const CUTOFF_PART_EV = 2.5;
 /** Parts by which the limits of a window are drawn in toward the edge, to see whether that saves time. */
@@ -104,27 +120,25 @@ export function planRun(
 ): RunPlan {
   check(target);
   const survey = predictRun(rates, facts, surveyWindows(rates, facts));
-  if (survey.numbers === null) {
-    return {
-      ...NO_RUN,
-      status: "failed",
-      reason: `the fit of the simulated spectrum fails: ${survey.reasons.join("; ")}`,
-      findings: findings(facts, survey, null),
-    };
-  }
+  if (survey.numbers === null) return failed("fit of the simulated spectrum", facts, survey);
+  const { quantity } = survey.numbers;
   const [low, high] = survey.numbers.edges;
   const last = rates.energiesEv[rates.energiesEv.length - 1];
   const lower: Span = { name: low.name, fromEv: low.fitWindowEv[0], toEv: low.fitWindowEv[1] };
   const upper: Span = {
     name: high.name,
     fromEv: high.fitWindowEv[0],
-    toEv: Math.min(high.fitWindowEv[1], high.positionEv + ABOVE_EDGE_EV),
+    toEv: Math.max(
+      Math.min(high.fitWindowEv[1], high.positionEv + ABOVE_EDGE_EV),
+      // Where no Fermi edge is found, the data must show that there is none.
+      quantity === "ionizationEnergyEv" ? facts.fermiLevelEv + BEYOND_LEVEL_EV : -Infinity,
+    ),
   };
   const reach = Math.max(
     0,
     ...(nearestLine(facts.photonEnergyEv)?.satellites ?? []).map(({ shiftEv }) => shiftEv),
   );
-  const plan = (spans: readonly [Span, Span]): RunPlan => settle(rates, facts, target, spans);
+  const plan = (spans: readonly [Span, Span]): RunPlan => settle(rates, facts, target, spans, quantity);
   let best = plan([lower, upper]);
   let spans: readonly [Span, Span] = [lower, upper];
   const isSpoiled = best.numbers === null || best.numbers.floorEv > best.numbers.systematicEv;
@@ -183,75 +197,68 @@ function surveyWindows(rates: Rates, facts: PlanFacts): RunWindow[] {
   });
 }
 
+/** A plan that cannot be made. */
+function failed(what: string, facts: PlanFacts, prediction: Prediction): RunPlan {
+  return {
+    ...NO_RUN,
+    status: "failed",
+    reason: `the ${what} fails${
+      prediction.reasons.length > 0 ? `: ${prediction.reasons.join("; ")}` : ""
+    }; if the spectrum is noisy, follow more photons or measure longer`,
+    findings: findings(facts, prediction, null),
+  };
+}
+
 /** Times, sweeps and prediction for given windows. */
 function settle(
   rates: Rates,
   facts: PlanFacts,
   target: PlanTarget,
   spans: readonly [Span, Span],
+  quantity: PredictedNumbers["quantity"],
 ): RunPlan {
-  const ranges = spans.map((span) => channelsOf(rates, span));
-  const channels = ranges.map(([from, past]) => past - from);
-  let times = channels.map((count) => count * facts.timePerChannelS);
-  let prediction: Prediction;
-  let leastS = NaN;
-  // The model that the fit chooses may depend on the counts: once more at the times found.
-  for (let round = 0;; round++) {
-    prediction = predictRun(rates, facts, spans.map((span, i) => ({ ...span, timeS: times[i] })));
-    const { numbers } = prediction;
-    if (numbers === null) {
-      return {
-        ...NO_RUN,
-        status: "failed",
-        reason: `the fit of the two windows fails: ${prediction.reasons.join("; ")}`,
-        findings: findings(facts, prediction, null),
-      };
-    }
-    const varianceTimes = numbers.edges.map(({ varianceTimeEv2S }) => varianceTimeEv2S);
-    leastS = leastTimeS(varianceTimes, numbers.floorEv, target.targetEv);
-    if (round === 1) break;
-    const allS = Math.min(
-      Number.isFinite(leastS)
-        ? leastS
-        : leastTimeS(varianceTimes, 0, Math.max(numbers.floorEv, target.targetEv) * SHARE_OF_FLOOR),
-      ...target.limits.map(({ timeS }) => timeS),
-    );
-    times = optimalShares(varianceTimes).map((share) => share * allS);
-  }
-  const numbers = prediction.numbers!;
-  const limit = target.limits.reduce<PlanTarget["limits"][number] | null>(
+  const limit = target.limits.reduce<TimeLimit | null>(
     (least, one) => least === null || one.timeS < least.timeS ? one : least,
     null,
   );
-  const isLimited = limit !== null && !(leastS <= limit.timeS);
-  const windows = spans.map((span, i): PlannedWindow => {
-    const wanted = times[i] / (channels[i] * facts.dwellS);
-    const sweeps = isLimited ? Math.max(1, Math.floor(wanted)) : Math.max(LEAST_SWEEPS, Math.ceil(wanted));
-    const dwellS = Math.min(facts.dwellS, isLimited ? times[i] / (channels[i] * sweeps) : Infinity);
-    const peakCountsPerS = rates.countsPerS.subarray(...ranges[i]).reduce((a, b) => Math.max(a, b), 0);
-    return {
-      ...span,
-      fromEv: rates.energiesEv[ranges[i][0]],
-      toEv: rates.energiesEv[ranges[i][1] - 1],
-      timeS: channels[i] * dwellS * sweeps,
-      channels: channels[i],
-      stepEv: facts.stepEv,
-      dwellS,
-      sweeps,
-      peakCountsPerS,
-      peakCounts: peakCountsPerS * dwellS * sweeps,
-    };
-  });
+  const mostS = limit?.timeS ?? MOST_TIME_S;
+  const ranges = spans.map((span) => channelsOf(rates, span));
+  const whole = spans.map((span, i) => ({
+    ...span,
+    timeS: Math.max(1, ranges[i][1] - ranges[i][0]) * facts.timePerChannelS,
+  }));
+  let prediction = predictRun(rates, facts, whole);
+  let numbers = prediction.numbers;
+  if (numbers === null) return failed("fit of the two windows", facts, prediction);
+  // With few counts a fit may take a faint Fermi edge for something else, or find none: so long must be measured at least.
+  let foundS = 0;
+  let windows: readonly PlannedWindow[];
+  for (;;) {
+    windows = setWindows(
+      rates,
+      facts,
+      spans,
+      ranges,
+      numbers,
+      Math.max(goalS(numbers, target), foundS),
+      mostS,
+    );
+    prediction = predictRun(rates, facts, windows);
+    if (prediction.numbers?.quantity === quantity) break;
+    foundS = 2 * windows.reduce((sum, window) => sum + window.timeS, 0);
+    if (foundS > mostS) {
+      return failed(`fit of what can be measured in ${mostS.toPrecision(3)} s`, facts, prediction);
+    }
+  }
+  numbers = prediction.numbers;
+  windows = setWindows(rates, facts, spans, ranges, numbers, Math.max(goalS(numbers, target), foundS), mostS);
   const timeS = windows.reduce((sum, window) => sum + window.timeS, 0);
-  const statisticalEv = Math.sqrt(
-    numbers.edges.reduce((sum, { varianceTimeEv2S }, i) => sum + varianceTimeEv2S / windows[i].timeS, 0),
-  );
-  const uncertaintyEv = Math.hypot(statisticalEv, numbers.floorEv);
   const varianceTimes = numbers.edges.map(({ varianceTimeEv2S }) => varianceTimeEv2S);
-  const { status, reason } = judge(numbers, target, leastS, limit, uncertaintyEv);
+  const statisticalEv = Math.sqrt(varianceTimes.reduce((sum, one, i) => sum + one / windows[i].timeS, 0));
+  const uncertaintyEv = Math.hypot(statisticalEv, numbers.floorEv);
+  const leastS = Math.max(foundS, leastTimeS(varianceTimes, numbers.floorEv, target.targetEv));
   return {
-    status,
-    reason,
+    ...judge(numbers, target, leastS, limit, uncertaintyEv),
     leastTimeS: leastS,
     windows,
     timeS,
@@ -262,11 +269,55 @@ function settle(
   };
 }
 
+/** Time that the target asks for, or where no time reaches it, that brings counting down to a share of the floor, s. */
+function goalS({ edges, floorEv }: PredictedNumbers, { targetEv }: PlanTarget): number {
+  const varianceTimes = edges.map(({ varianceTimeEv2S }) => varianceTimeEv2S);
+  const leastS = leastTimeS(varianceTimes, floorEv, targetEv);
+  return Number.isFinite(leastS) ? leastS : leastTimeS(varianceTimes, 0, SHARE_OF_FLOOR * floorEv);
+}
+
+/** Windows with the time ideally split, in whole sweeps; no longer than allowed. */
+function setWindows(
+  rates: Rates,
+  facts: PlanFacts,
+  spans: readonly Span[],
+  ranges: readonly (readonly [from: number, past: number])[],
+  { edges }: PredictedNumbers,
+  wantedS: number,
+  mostS: number,
+): PlannedWindow[] {
+  const shares = optimalShares(edges.map(({ varianceTimeEv2S }) => varianceTimeEv2S));
+  const settings = shares.map((share, i) => {
+    const channels = ranges[i][1] - ranges[i][0];
+    const perChannelS = (share * Math.min(wantedS, mostS)) / channels;
+    const sweeps = Math.max(LEAST_SWEEPS, Math.ceil(perChannelS / facts.dwellS));
+    const dwellS = perChannelS / sweeps;
+    return { channels, sweeps, dwellS, calmS: Math.max(dwellS, Math.min(LEAST_DWELL_S, facts.dwellS)) };
+  });
+  const calmS = settings.reduce((sum, { channels, sweeps, calmS }) => sum + channels * sweeps * calmS, 0);
+  return settings.map(({ channels, sweeps, ...dwell }, i) => {
+    const dwellS = calmS > mostS ? dwell.dwellS : dwell.calmS;
+    const peakCountsPerS = rates.countsPerS.subarray(...ranges[i]).reduce((a, b) => Math.max(a, b), 0);
+    return {
+      ...spans[i],
+      fromEv: rates.energiesEv[ranges[i][0]],
+      toEv: rates.energiesEv[ranges[i][1] - 1],
+      timeS: channels * dwellS * sweeps,
+      channels,
+      stepEv: facts.stepEv,
+      dwellS,
+      sweeps,
+      peakCountsPerS,
+      peakCounts: peakCountsPerS * dwellS * sweeps,
+    };
+  });
+}
+
 function judge(
   numbers: PredictedNumbers,
   { targetEv }: PlanTarget,
   leastS: number,
-  limit: PlanTarget["limits"][number] | null,
+  limit: TimeLimit | null,
   uncertaintyEv: number,
 ): { readonly status: RunStatus; readonly reason: string } {
   const meV = (value: number): string => `${(1000 * value).toPrecision(3)} meV`;

@@ -42,7 +42,9 @@ const COMBINED = "combined";
  * assert.match(svg, /5\.0 meV/);
  * ```
  */
-export function budgetFigure({ title, subtitle, terms, combinedEv }: BudgetFigureInput): Spec {
+export function budgetFigure(
+  { title, subtitle, terms, combinedEv }: BudgetFigureInput,
+): Record<string, unknown> {
   const check = (name: string, value: number): void => {
     if (!(value >= 0 && value < Infinity)) {
       throw new RangeError(cannot("draw a budget", `${name} must be finite and >= 0 eV`, `${value} eV`));
@@ -94,5 +96,5 @@ export function budgetFigure({ title, subtitle, terms, combinedEv }: BudgetFigur
       },
     ],
   });
-  return { ...figure, title: { ...figure.title as Spec, dx: 12 - NAME_WIDTH } };
+  return { ...figure, title: { ...figure.title as Spec, frame: "group", dx: 12 - NAME_WIDTH } };
 }

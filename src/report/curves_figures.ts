@@ -7,7 +7,7 @@ export interface FigureDepthCurve {
   readonly label: string;
   /** Depths below the surface, nm, ascending, shape (n), n >= 1. */
   readonly depthsNm: ArrayLike<number>;
-  /** Emitted electrons per nm of depth, shape (n). */
+  /** Share of the electrons per nm of depth, shape (n). */
   readonly densitiesPerNm: ArrayLike<number>;
 }
 
@@ -52,6 +52,8 @@ interface Curve {
 }
 
 const HEIGHT = 280;
+/** Width of a letter of marks, pixels. */
+const LETTER = 6.5;
 const ALL = "all";
 
 /**
@@ -73,8 +75,9 @@ const ALL = "all";
  * assert.match(svg, /Depth below the surface \/ nm/);
  * ```
  */
-export function depthFigure({ title, subtitle, curves, marks }: DepthFigureInput): Spec {
+export function depthFigure({ title, subtitle, curves, marks }: DepthFigureInput): Record<string, unknown> {
   for (const { label, depthNm } of marks) demandFinite("draw depths", label, depthNm);
+  const deepestNm = Math.max(...curves.map(({ depthsNm }) => depthsNm[depthsNm.length - 1] ?? 0));
   const x = {
     type: "quantitative",
     scale: { zero: true, nice: false },
@@ -88,21 +91,33 @@ export function depthFigure({ title, subtitle, curves, marks }: DepthFigureInput
         "draw depths",
         curves.map(({ label, depthsNm, densitiesPerNm }) => ({ label, x: depthsNm, y: densitiesPerNm })),
         x,
-        { type: "quantitative", axis: { title: "Emitted electrons per depth / (1/nm)" } },
+        { type: "quantitative", axis: { title: "Share of the electrons per depth / (1/nm)" } },
       ),
       ...marks.flatMap(({ label, depthNm }, i) => {
         const values = [{ x: depthNm, text: `${label}: ${depthNm.toFixed(2)} nm` }];
+        const isRight = depthNm / deepestNm * WIDTH + LETTER * values[0].text.length > WIDTH;
+        const words = (color: string, strokeWidth: number) => ({
+          data: { values },
+          mark: {
+            type: "text",
+            align: isRight ? "right" : "left",
+            dx: isRight ? -4 : 4,
+            fontSize: 11,
+            color,
+            stroke: color,
+            strokeWidth,
+          },
+          encoding: { x: { ...x, field: "x" }, y: { value: 12 + 16 * i }, text: { field: "text" } },
+        });
         return [
           {
             data: { values },
             mark: { type: "rule", color: DARK, strokeDash: [3, 3] },
             encoding: { x: { ...x, field: "x" } },
           },
-          {
-            data: { values },
-            mark: { type: "text", align: "left", dx: 4, color: DARK, fontSize: 11 },
-            encoding: { x: { ...x, field: "x" }, y: { value: 12 + 16 * i }, text: { field: "text" } },
-          },
+          // A white edge keeps words readable on lines.
+          words("white", 4),
+          words(DARK, 0),
         ];
       }),
     ],
@@ -126,7 +141,9 @@ export function depthFigure({ title, subtitle, curves, marks }: DepthFigureInput
  * assert.match(svg, /1 or more/);
  * ```
  */
-export function lossFigure({ title, subtitle, axisTitle, energiesEv, parts }: LossFigureInput): Spec {
+export function lossFigure(
+  { title, subtitle, axisTitle, energiesEv, parts }: LossFigureInput,
+): Record<string, unknown> {
   const sum = Array.from(energiesEv, (_, i) => parts.reduce((total, { counts }) => total + counts[i], 0));
   return frame(title, subtitle, {
     width: WIDTH,

@@ -59,7 +59,7 @@ const CHANNELS_BESIDE = 10;
  * assert.match(svg, /half height/);
  * ```
  */
-export function cutoffFigure(input: CutoffFigureInput): Spec {
+export function cutoffFigure(input: CutoffFigureInput): Record<string, unknown> {
   const { measured, conventions, axisTitle } = input;
   if (conventions.length === 0) throw new RangeError(cannot(ACTION, "there must be a convention", 0));
   if (measured.energiesEv.length !== measured.counts.length) {

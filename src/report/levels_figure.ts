@@ -69,7 +69,7 @@ const ANALYZER = { from: 5.7, to: 7.2, label: 7.45 } as const;
  * assert.match(svg, /vacuum level: W = 5\.100\(10\) eV/);
  * ```
  */
-export function levelsFigure(input: LevelsFigureInput): Spec {
+export function levelsFigure(input: LevelsFigureInput): Record<string, unknown> {
   const { photonEnergyEv, workFunctionEv, maxKineticEnergyEv, valenceBandMaximumEv, recorded, biasV } = input;
   const { analyzerWorkFunctionEv } = input;
   const vacuumEv = workFunctionEv.value;
@@ -148,7 +148,7 @@ export function levelsFigure(input: LevelsFigureInput): Spec {
     height: HEIGHT,
     layer: [
       ...columns.flatMap(({ name, place, levels }) => columnLayers(name, place, levels, domain, y)),
-      ...arrows.flatMap((arrow) => arrowLayers(arrow, y)),
+      ...arrows.flatMap((arrow) => arrowLayers(arrow, y, 0.04 * (highest - lowest))),
     ],
   });
 }
@@ -215,7 +215,8 @@ function columnLayers(
   ];
 }
 
-function arrowLayers({ x, fromEv, toEv, symbol, style }: Arrow, y: Spec): Spec[] {
+/** An arrow, with its symbol where it is long enough. */
+function arrowLayers({ x, fromEv, toEv, symbol, style }: Arrow, y: Spec, leastEv: number): Spec[] {
   const { color } = EDGE_STYLES[style];
   const isUp = toEv >= fromEv;
   return [
@@ -237,7 +238,7 @@ function arrowLayers({ x, fromEv, toEv, symbol, style }: Arrow, y: Spec): Spec[]
       },
       encoding: { x: across("from"), y },
     },
-    ...(symbol === "" ? [] : [{
+    ...(symbol === "" || Math.abs(toEv - fromEv) < leastEv ? [] : [{
       data: { values: [{ energyEv: (fromEv + toEv) / 2, from: x, symbol }] },
       mark: { type: "text", align: "left", dx: 5, baseline: "middle", color: DARK, fontSize: 11.5 },
       encoding: { x: across("from"), y, text: { field: "symbol" } },

@@ -3,6 +3,7 @@
  *
  * @module
  */
+export { compareFigure, type CompareFigureInput, type CompareFigureRegion } from "./compare_figure.ts";
 export { renderSvg } from "./render.ts";
 export {
   type FigureCurve,
@@ -38,3 +39,12 @@ export {
   type ReportPageInput,
 } from "./page.ts";
 export { svgToPng } from "./png.ts";
+export { type Displayed, type DisplayEdge, type DisplayFit, displayFit, displaySpectrum } from "./display.ts";
+export { planFigure, type PlanFigureInput } from "./plan_figure.ts";
+export {
+  type RunSheet,
+  runSheetHtml,
+  runSheetMarkdown,
+  type SheetPicture,
+  type SheetSection,
+} from "./run_sheet.ts";

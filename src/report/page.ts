@@ -81,7 +81,7 @@ input { width: 7rem; font: inherit; } button { font: inherit; }
 dt { font-weight: bold; } dd { margin: 0 0 0.4rem 1rem; }
 @media print {
   body { max-width: none; font-size: 10pt; } #explore { display: none; } figure, tr { break-inside: avoid; }
-  .scroll { overflow: visible; } .scroll > svg, .scroll > img { min-width: 0; width: 100%; }
+  .scroll { overflow: visible; } .scroll > svg, .scroll > img { min-width: 0; max-height: 14cm; width: auto; }
 }`;
 
 /**
@@ -188,7 +188,9 @@ function explorerHtml({ expected }: PageSpectrum): string[] {
     '<div class="scroll"><svg id="plot" viewBox="0 0 720 300" role="application" tabindex="0"',
     'aria-label="Spectrum: arrow keys read a channel, plus and minus zoom" aria-describedby="readout"></svg></div>',
     '<p><output id="readout" aria-live="polite"></output></p>',
-    `<p>Counts on a square-root scale: gray${expected ? ", expected counts: blue" : ""}. Drag to zoom.</p>`,
+    `<p>Counts on a square-root scale${
+      expected ? ", expected counts as a wide light line" : ""
+    }. Drag to zoom.</p>`,
     "</section>",
   ];
 }

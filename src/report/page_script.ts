@@ -62,9 +62,9 @@ export const PAGE_SCRIPT = `"use strict";
     make("text", { x: (L + W - R) / 2, y: H - 5, "text-anchor": "middle" }, id("data").dataset.axis);
     const path = (list) => "M" + shown.map((i) => px(x[i]).toFixed(1) + "," + py(list[i]).toFixed(1)).join("L");
     if (shown.length > 0) {
-      make("path", { d: path(counts), fill: "none", stroke: "#8c8c8c" });
+      if (expected) make("path", { d: path(expected), fill: "none", stroke: "#56B4E9", "stroke-width": 3 });
       if (shown.length < 300) for (const i of shown) make("circle", { cx: px(x[i]), cy: py(counts[i]), r: 1.8 });
-      if (expected) make("path", { d: path(expected), fill: "none", stroke: "#0072B2", "stroke-width": 1.5 });
+      else make("path", { d: path(counts), fill: "none", stroke: ink, "stroke-width": 0.8 });
     }
     cursor = make("line", { y1: T, y2: H - B, stroke: "#D55E00", "stroke-dasharray": "4 3" });
     read();

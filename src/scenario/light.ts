@@ -29,10 +29,12 @@ export interface LightGroup {
 const BAND_POINTS = 33;
 const BAND_REACH_SIGMAS = 4;
 const FWHM_PER_SIGMA = 2 * Math.sqrt(2 * Math.LN2);
-/** Width of the stretches of a continuous spectrum, eV: optical constants change by some percent. */
+/** A continuous spectrum is cut into at most so many stretches of one absorption depth each, not narrower than this, eV. */
+const MOST_STRETCHES = 8;
 const STRETCH_EV = 0.25;
-/** Step of Planck's spectrum, eV: finer than kT at room temperature. */
+/** Step of Planck's spectrum, eV: finer than kT at room temperature, and points at most. */
 const THERMAL_STEP_EV = 0.01;
+const MOST_THERMAL_POINTS = 500;
 /** A pulse that emits more electrons than this per spot broadens and shifts the spectrum (common practice, no source). */
 const SPACE_CHARGE_PHOTONS = 1e7;
 
@@ -88,7 +90,8 @@ export function lightGroups(
       };
     }
     case "thermal": {
-      const window = { lowEv: light.lowEv, highEv: light.highEv, stepEv: THERMAL_STEP_EV };
+      const stepEv = Math.max(THERMAL_STEP_EV, (light.highEv - light.lowEv) / MOST_THERMAL_POINTS);
+      const window = { lowEv: light.lowEv, highEv: light.highEv, stepEv };
       return { groups: stretches(thermalLight(light.temperatureK, window)), warnings: [] };
     }
   }
@@ -139,9 +142,11 @@ function shares(
 /** Cuts a continuous spectrum into stretches, the one with most photons first. */
 function stretches(points: readonly LightPoint[]): LightGroup[] {
   const cuts = new Map<number, LightPoint[]>();
+  const lowEv = points[0].energyEv;
+  const widthEv = Math.max(STRETCH_EV, (points[points.length - 1].energyEv - lowEv) * 1.001 / MOST_STRETCHES);
   for (const point of points) {
     if (point.weight === 0) continue;
-    const cut = Math.floor(point.energyEv / STRETCH_EV);
+    const cut = Math.floor((point.energyEv - lowEv) / widthEv);
     cuts.set(cut, [...(cuts.get(cut) ?? []), point]);
   }
   return [...cuts.values()].map((inside) => {

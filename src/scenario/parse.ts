@@ -7,6 +7,9 @@ import type { Scenario } from "./types.ts";
 
 const energy = (low: number, high: number) => z.number().min(low).max(high);
 
+/** Any text, as a file of the user may define the material; the built-in names are there for editors. */
+const materialName = z.union([z.enum(MATERIAL_IDS), z.string().min(1)]);
+
 const transportMeanFreePathNm = z.number().positive().max(1e6).nullable().default(null);
 
 const surface = z.strictObject({
@@ -25,7 +28,8 @@ const surface = z.strictObject({
 const charging = z.strictObject({ shiftEv: energy(-20, 100).default(0), fwhmEv: energy(0, 20).default(0) });
 
 const sample = z.strictObject({
-  material: z.enum(MATERIAL_IDS),
+  material: materialName,
+  materialFile: z.string().min(1).nullable().default(null),
   face: z.string().min(1).default("polycrystalline"),
   temperatureK: z.number().min(0).max(3000).default(300),
   workFunctionEv: energy(0.5, 10).nullable().default(null),
@@ -34,7 +38,7 @@ const sample = z.strictObject({
   densityOfStatesFile: z.string().min(1).nullable().default(null),
   meanFreePathFile: z.string().min(1).nullable().default(null),
   layers: z.array(z.strictObject({
-    material: z.enum(MATERIAL_IDS),
+    material: materialName,
     thicknessNm: z.number().min(0.01).max(10_000),
     transportMeanFreePathNm,
   })).max(8).default([]),
@@ -194,7 +198,10 @@ export function parseScenario(text: string, fileName: string, overrides: readonl
     (keys) => schemaAt(keys) instanceof z.ZodString,
   );
   const checked = scenario.safeParse(data, { reportInput: true });
-  const problems = checked.success ? crossChecks(checked.data) : checked.error.issues.flatMap(toProblems);
+  const problems = [
+    ...unknownMaterials(data),
+    ...(checked.success ? crossChecks(checked.data) : checked.error.issues.flatMap(toProblems)),
+  ];
   if (problems.length > 0) throw new InputError(problems);
   return checked.data as Scenario;
 }
@@ -221,6 +228,27 @@ function duplicateKeys(node: Node, pointer = ""): Problem[] {
     if (value) problems.push(...duplicateKeys(value, place));
   }
   return problems;
+}
+
+/** Materials that are neither built in nor possibly the user's own. */
+function unknownMaterials(data: unknown): Problem[] {
+  const sample =
+    (data as { sample?: { material?: unknown; materialFile?: unknown; layers?: unknown } } | null)
+      ?.sample;
+  if (typeof sample?.materialFile === "string") return [];
+  const layers = Array.isArray(sample?.layers) ? sample.layers : [];
+  const named: [string, unknown][] = [
+    ["/sample/material", sample?.material],
+    ...layers.map((layer, i): [string, unknown] => [`/sample/layers/${i}/material`, layer?.material]),
+  ];
+  return named.flatMap(([place, id]) => {
+    if (typeof id !== "string" || id === "" || MATERIAL_IDS.includes(id)) return [];
+    const near = suggest(id, MATERIAL_IDS);
+    const rule = `material must be one of ${MATERIAL_IDS.join(", ")}${
+      near ? ` (did you mean ${near}?)` : ""
+    }, or that of a materialFile`;
+    return [{ place, message: cannot("read scenario", rule, id) }];
+  });
 }
 
 function crossChecks(data: Scenario): Problem[] {

@@ -22,6 +22,8 @@ export interface UserTables {
   readonly densityOfStates?: UserTable;
   /** For `sample.meanFreePathFile`. */
   readonly meanFreePath?: UserTable;
+  /** For `sample.materialFile`. */
+  readonly material?: Material;
   /** For `light.file`: photon energies, eV, and photons per eV. */
   readonly light?: UserTable;
 }
@@ -163,9 +165,10 @@ export function resolveScenario(scenario: Scenario, tables: UserTables = {}): Re
     }
   };
   const { sample, geometry, analyzer, biasV } = scenario;
-  const substrate = attempt("/sample/material", () => material(sample.material));
+  const lookUp = (id: string): Material => (tables.material?.id === id ? tables.material : material(id));
+  const substrate = attempt("/sample/material", () => lookUp(sample.material));
   const films = sample.layers.map((layer, i) =>
-    attempt(`/sample/layers/${i}/material`, () => material(layer.material))
+    attempt(`/sample/layers/${i}/material`, () => lookUp(layer.material))
   );
   const top = films.length > 0 ? films[0] : substrate;
   const face = top && attempt("/sample/face", () => faceWorkFunction(top, sample.face));
@@ -196,7 +199,7 @@ export function resolveScenario(scenario: Scenario, tables: UserTables = {}): Re
         }))
     )
     : [];
-  for (const [key, table] of USER_TABLES) {
+  for (const [key, table] of USER_FILES) {
     if (sample[key] !== null && tables[table] === undefined) {
       problems.push({
         place: `/sample/${key}`,
@@ -324,7 +327,8 @@ const LIGHT_PLACES: Readonly<Record<Scenario["light"]["kind"], string>> = {
   laser: "/light/photonEnergyEv",
 };
 
-const USER_TABLES = [
+const USER_FILES = [
+  ["materialFile", "material"],
   ["densityOfStatesFile", "densityOfStates"],
   ["meanFreePathFile", "meanFreePath"],
 ] as const;

@@ -56,8 +56,10 @@ export interface ChargingSettings {
 
 /** The sample: a substrate, films on it, and its surface. */
 export interface SampleSettings {
-  /** Material by its built-in name, such as `Au`. */
+  /** Material by its built-in name, such as `Au`, or that of the material file. */
   readonly material: string;
+  /** JSON file with one material of your own, beside the scenario (see `materials`). Default: null. */
+  readonly materialFile: string | null;
   /** Face whose tabulated work function is used. Default: `polycrystalline`. */
   readonly face: string;
   /** Temperature, K, 0..3000. Default: 300 K. */

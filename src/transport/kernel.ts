@@ -5,6 +5,12 @@ import type { LayerStack } from "./stack.ts";
 /** Histories in one batch; a batch is the unit of work, of random streams and of statistics. */
 export const HISTORIES_PER_BATCH = 4096;
 
+/**
+ * An electron that cannot lose energy (in a gap) walks about at random for ever; after so many elastic events in a row it
+ * is taken for lost. One in a hundred that start a mean free path deep would still come out.
+ */
+const MOST_TURNS = 10_000;
+
 /** Depth cells per mean free path of the detection table. */
 export const DEPTH_CELLS_PER_PATH = 32;
 
@@ -218,6 +224,7 @@ export function historyRunner(
         let bin = stackBins[pending];
         let depthNm = stackDepths[pending];
         let layer = stackLayers[pending];
+        let turns = 0;
         while (bin >= vacuumBin) {
           let row = layer * count + bin;
           let paths = topPaths[row] + (depthNm - topsNm[layer]) * pathsPerNm[row];
@@ -251,7 +258,11 @@ export function historyRunner(
           // An infinite path (no event possible) that did not leave has gone for good; the negation also stops NaN.
           if (!(depthNm < Infinity)) break;
 
-          if (inelasticShare[row] < 1 && generator.nextUniform() >= inelasticShare[row]) continue;
+          if (inelasticShare[row] < 1 && generator.nextUniform() >= inelasticShare[row]) {
+            if (++turns > MOST_TURNS) break;
+            continue;
+          }
+          turns = 0;
           events[bin]++;
           const transfer = sampleAlias(lossTable, lossOffset[row], lossCount[row], generator);
           const struckRow = layer * transfers + transfer;

@@ -146,6 +146,7 @@ const BROKEN: [item: string, line: string, rule: string][] = [
   ["abscissa start", "1E37", "it must be known"],
   ["abscissa increment", "0", "it must not be 0"],
   ["number of ordinate values", "11", "it must be a multiple of the 2 corresponding variables"],
+  ["number of ordinate values", "2000002", "there must be at most 1000000 points"],
   ["number of ordinate values", "0", "it must be a multiple of the 2 corresponding variables"],
   ['minimum of "Intensity"', "2.99", "it must agree with the ordinates, where it is 3"],
   ['maximum of "Intensity"', "71.01", "it must agree with the ordinates, where it is 71"],

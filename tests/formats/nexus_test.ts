@@ -329,7 +329,7 @@ Deno.test("readNexus() never crashes and never gives other numbers when a bit of
   const [good] = (await readNexus(bytes, "g")).regions;
   // Single texts have no checksum; all the rest does (HDF5 1.10 layout, zlib).
   const texts = ["label", "comments", ...Object.keys(good.metadata)].filter((key) => key !== "temperature_k");
-  const STEP = 23; // odd, so that every bit of a byte comes up; all bytes and bits were tried once
+  const STEP = 61; // odd, so that every bit of a byte comes up; all bytes and bits were tried once
   let refused = 0;
   for (let at = 0; at < bytes.length; at += STEP) {
     const changed = bytes.with(at, bytes[at] ^ (1 << (at % 8)));

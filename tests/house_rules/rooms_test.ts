@@ -17,6 +17,7 @@ const MAY_IMPORT: Readonly<Record<string, readonly string[]>> = {
   losses: ["math", "rng"],
   fit: ["math"],
   edges: ["data", "fit", "rng", "spectrum"],
+  compare: ["fit"],
   emission: ["data"],
   series: ["data", "emission", "fit", "math"],
   lines: ["data", "fit", "light", "losses", "math", "series", "spectrum"],
@@ -25,13 +26,16 @@ const MAY_IMPORT: Readonly<Record<string, readonly string[]>> = {
   model: ["math", "rng", "sample", "spectrum", "transport", "instrument", "scenario"],
   sweep: ["rng", "scenario"],
   run: ["data", "edges", "model", "scenario", "sweep", "transport"],
+  plan: ["data", "edges", "rng", "scenario"],
   report: [],
   cli: [
+    "compare",
     "data",
     "edges",
     "formats",
     "lines",
     "model",
+    "plan",
     "report",
     "run",
     "scenario",
@@ -56,7 +60,7 @@ const PURE = [
   "edges",
   "formats",
 ]
-  .concat("scenario", "model", "sweep", "light", "losses", "emission", "series", "lines");
+  .concat("scenario", "model", "sweep", "light", "losses", "emission", "series", "lines", "compare", "plan");
 
 interface SourceFile {
   readonly room: string;

@@ -1,6 +1,7 @@
 import assert from "node:assert/strict";
 import { compile, type TopLevelSpec } from "vega-lite";
 import { renderSvg, spectrumFigure, type SpectrumFigureInput } from "../../src/report/mod.ts";
+import { rowsWith, textsOf } from "../support/drawing.ts";
 
 /** Invented counts: a cutoff at 9.7 eV and a Fermi edge at 25.8 eV, on `channels` channels. */
 function curve(fromEv: number, toEv: number, channels: number) {
@@ -233,19 +234,4 @@ for (const [what, part, sentence] of REFUSED) {
       message: `Cannot draw a spectrum as ${sentence}`,
     });
   });
-}
-
-/** All texts of a drawing, unescaped. */
-function textsOf(svg: string): string[] {
-  const entities: Readonly<Record<string, string>> = { amp: "&", lt: "<", gt: ">", quot: '"', apos: "'" };
-  return [...svg.matchAll(/<(?:text|tspan)[^>]*>([^<]+)</g)].map(([, text]) =>
-    text.replaceAll(/&(\w+);/g, (_, name) => entities[name])
-  );
-}
-
-/** All rows of inline data, anywhere in a chart, that have a field. */
-function rowsWith(part: unknown, field: string): Record<string, unknown>[] {
-  if (typeof part !== "object" || part === null) return [];
-  const own = Object.hasOwn(part, field) && !("type" in part) ? [part as Record<string, unknown>] : [];
-  return [...own, ...Object.values(part).flatMap((inner) => rowsWith(inner, field))];
 }

@@ -8,14 +8,23 @@ Deno.test("scenario.schema.json is what the code writes (deno task schema)", asy
   assert.equal(text, `${JSON.stringify(scenarioJsonSchema(), null, 2)}\n`);
 });
 
-Deno.test("every shipped scenario parses and resolves without warnings", async () => {
+/** Scenarios that show what a warning is for. */
+const ON_PURPOSE: Readonly<Record<string, readonly string[]>> = {
+  "patchy_gold_he1.json": ["several-work-functions"],
+};
+
+Deno.test("every shipped scenario parses and resolves without warnings but those it is there to show", async () => {
   const names = Array.from(Deno.readDirSync(FOLDER), ({ name }) => name)
     .filter((name) => name.endsWith(".json") && name !== "scenario.schema.json");
   assert.ok(names.length > 0);
   for (const name of names) {
     const scenario = parseScenario(await Deno.readTextFile(new URL(name, FOLDER)), name);
     assert.equal(scenario.$schema, "./scenario.schema.json", name);
-    assert.deepEqual(resolveScenario(scenario).warnings, [], name);
+    assert.deepEqual(
+      resolveScenario(scenario).warnings.map(({ code }) => code),
+      ON_PURPOSE[name] ?? [],
+      name,
+    );
   }
 });
 

@@ -21,6 +21,7 @@ Deno.test("parseScenario() fills in the defaults", () => {
   assert.equal(scenario.note, "");
   assert.deepEqual(scenario.sample, {
     material: "Au",
+    materialFile: null,
     face: "polycrystalline",
     temperatureK: 300,
     workFunctionEv: null,
@@ -71,10 +72,10 @@ Deno.test("parseScenario() reports every problem at once, each with pointer, rul
     .replace('"biasV": -9', '"biasv": -9').replace('"dwellS": 0.5', '"dwellS": 0, "sweeps": 1.5')
     .replace('"stepEv": 0.02', '"stepEv": "0.02 eV"').replace('"title": "gold"', '"title": ""');
   assert.deepEqual(refused(text), [
-    '/title: title must be >= 1 characters: current value is ""',
     `/sample/material: material must be one of ${
       MATERIAL_IDS.join(", ")
-    } (did you mean Au?): current value is "au"`,
+    } (did you mean Au?), or that of a materialFile: current value is "au"`,
+    '/title: title must be >= 1 characters: current value is ""',
     '/sample/temperature: every key must be known (did you mean temperatureK?): current value is "temperature"',
     "/geometry/incidenceAngleDeg: incidenceAngleDeg must be <= 89 degrees: current value is 95",
     '/analyzer/resolution/passEnergyEv: passEnergyEv must be given: current value is "nothing"',

@@ -39,31 +39,46 @@ export interface Coverage {
   readonly pullDeviation: number;
 }
 
-/** Fits replicates; `errorEv` is added to the truth, to see that a wrong one is found out. */
-export function coverage(shape: TwoEdges, replicates: number, errorEv = 0): Coverage {
+/** One replicate: error of the answer, its uncertainty without and with the form of the states; null without answer. */
+export type Replicate =
+  | {
+    readonly errorEv: number;
+    readonly uncertaintiesEv: readonly [number, number];
+    readonly isGood: boolean;
+  }
+  | null;
+
+/** Fits replicates of a spectrum. */
+export function fitReplicates(shape: TwoEdges, replicates: number): Replicate[] {
   const { energiesEv, counts } = expectedTwoEdges(shape);
-  const pulls: number[] = [];
-  const wholePulls: number[] = [];
-  let flagged = 0;
-  for (let replicate = 0; replicate < replicates; replicate++) {
+  return Array.from({ length: replicates }, (_, replicate): Replicate => {
     const region = twoEdgesRegion(shape, energiesEv, countTwoEdges(counts, replicate));
     const { workFunctionEv, verdict, budget } = measureWorkFunction([region], { knownLine: nearestLine });
-    if (workFunctionEv === null) continue;
-    if (verdict !== "good") flagged++;
-    const truth = shape.patches[0][0] + errorEv + PHOTON_UNCERTAINTY_EV * normalDraw(replicate);
+    if (workFunctionEv === null) return null;
     const { value, standardUncertainty } = workFunctionEv;
     const form = budget.find((term) => term.name === "Fermi edge, form of the states");
     const states = form?.standardUncertaintyEv ?? 0;
-    pulls.push((value - truth) / Math.sqrt(standardUncertainty ** 2 - states ** 2));
-    wholePulls.push((value - truth) / standardUncertainty);
-  }
+    return {
+      errorEv: value - shape.patches[0][0] - PHOTON_UNCERTAINTY_EV * normalDraw(replicate),
+      uncertaintiesEv: [Math.sqrt(standardUncertainty ** 2 - states ** 2), standardUncertainty],
+      isGood: verdict === "good",
+    };
+  });
+}
+
+/** Coverage by replicates; `wrongByEv` is taken off the truth, to see that a wrong one is found out. */
+export function coverage(fits: readonly Replicate[], wrongByEv = 0): Coverage {
+  const answers = fits.filter((fit) => fit !== null);
+  const [pulls, wholePulls] = [0, 1].map((kind) =>
+    answers.map(({ errorEv, uncertaintiesEv }) => (errorEv + wrongByEv) / uncertaintiesEv[kind])
+  );
   const mean = pulls.reduce((sum, pull) => sum + pull, 0) / pulls.length;
   const share = (of: readonly number[], k: number): number =>
     of.filter((pull) => Math.abs(pull) <= k).length / of.length;
   return {
-    replicates,
-    failed: replicates - pulls.length,
-    flagged,
+    replicates: fits.length,
+    failed: fits.length - answers.length,
+    flagged: answers.filter(({ isGood }) => !isGood).length,
     within: [share(pulls, 1), share(pulls, 2)],
     withinWhole: [share(wholePulls, 1), share(wholePulls, 2)],
     meanPull: mean,
@@ -86,7 +101,7 @@ if (import.meta.main) {
   console.log(`${replicates} replicates   without states: k = 1    k = 2   mean pull  deviation`);
   console.log(`${"".padEnd(18)}with states: k = 1    k = 2     flagged     failed`);
   for (const [name, shape] of Object.entries(SCENARIOS)) {
-    const found = coverage(shape, replicates);
+    const found = coverage(fitReplicates(shape, replicates));
     const { within, withinWhole, meanPull, pullDeviation, flagged, failed } = found;
     console.log(
       `${name.padEnd(28)} ${percent(within[0])} ${percent(within[1])} ${meanPull.toFixed(3).padStart(11)} ${
