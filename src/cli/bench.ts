@@ -14,7 +14,7 @@ import { loadScenario } from "./simulate.ts";
 
 const HISTORIES = 8_000_000;
 const REPEATS = 5;
-const SCENARIOS = ["clean_gold_he1", "gold_under_carbon_al_kalpha"];
+const SCENARIOS = ["clean_gold_he1", "gold_under_aluminum_al_kalpha"];
 
 function median(values: number[]): number {
   return values.sort((a, b) => a - b)[values.length >> 1];

@@ -103,10 +103,12 @@ export function suspectParameters(loaded: LoadedScenario): ScenarioParameter[] {
       resolved.biasV - 1,
       resolved.biasV + 1,
     ]),
-    plain("analyzer.acceptanceHalfAngleDeg", half, [0.6 * half, Math.min(90, 1.5 * half)], [
-      0.6 * half,
-      Math.min(90, 1.5 * half),
-    ]),
+    plain(
+      "analyzer.acceptanceHalfAngleDeg",
+      half,
+      [0.7 * half, Math.min(90, 1.4 * half)],
+      [0.7, 0.85, 1.2, 1.4].map((f) => Math.min(90, f * half)),
+    ),
     ...(scenario.light.kind === "lamp"
       ? [{
         ...plain("light.satellites", hasSatellites ? 1 : 0, [0, 5], [hasSatellites ? 0 : 1]),
@@ -135,10 +137,10 @@ export function suspectParameters(loaded: LoadedScenario): ScenarioParameter[] {
       ],
     },
     {
-      ...plain("sample.surface.workFunctionSpreadEv", 0, [0, 0.2], [0.05, 0.1, 0.2]),
+      ...plain("sample.surface.workFunctionSpreadEv", 0, [0, 0.15], [0.05, 0.1, 0.15]),
       isRigid: true,
     },
-    plain("sample.charging.fwhmEv", 0, [0, 4 * fwhm], [fwhm, 2 * fwhm, 4 * fwhm]),
+    plain("sample.charging.fwhmEv", 0, [0, 1.5 * fwhm], [0.5 * fwhm, fwhm, 1.5 * fwhm]),
   ];
 }
 

@@ -180,6 +180,7 @@ function templateOf(
     darkCounts: acquisition.darkRateCountsPerS * acquisition.dwellS * acquisition.sweeps,
     cutoffEv: resolved.workFunctionEv + resolved.kineticEnergyShiftEv,
     fermiEdgeEv: fermiEdgeEv(resolved),
+    resolutionFwhmEv: resolved.resolutionFwhmEv,
   };
 }
 

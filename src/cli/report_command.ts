@@ -7,6 +7,7 @@ type ReportFlags = { png: boolean; spec: boolean };
 
 /** Figures of other commands. */
 const FIGURE_TITLES: Readonly<Record<string, string>> = {
+  "depths.svg": "Depths that electrons come from (depths.svg)",
   "fit.svg": "Spectrum and both fitted edges (fit.svg)",
   "spectrum.svg": "Spectrum as simulated (spectrum.svg)",
 };

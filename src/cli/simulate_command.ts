@@ -1,6 +1,7 @@
 import { buildCommand } from "@stricli/core";
 import process from "node:process";
 import { HISTORIES_PER_BATCH } from "../transport/mod.ts";
+import { depthsSvg } from "./depths_svg.ts";
 import { stem, writeFiles } from "./files.ts";
 import { noticeText } from "./fit.ts";
 import {
@@ -43,7 +44,8 @@ export const simulateCommand = buildCommand({
   docs: {
     brief: "Simulate the spectrum of a scenario: spectrum.csv, result.json, spectrum.svg",
     fullDescription: [
-      "Simulate the spectrum of a scenario and write spectrum.csv, result.json and spectrum.svg. Ctrl-C stops early, writes",
+      "Simulate the spectrum of a scenario and write spectrum.csv, result.json and spectrum.svg; where core levels give lines,",
+      "also depths.svg, the depths that their electrons come from. Ctrl-C stops early, writes",
       "what is done so far (result.json then says complete: false) and ends with exit code 1.",
       "",
       "--until 0.5% follows photons until the relative standard error of the worst channel is below that, among channels",
@@ -217,9 +219,11 @@ export async function runScenario(
 
 /** Writes what a simulation gives. */
 export async function writeSimulation(simulation: Simulation, folder: string): Promise<string[]> {
+  const depths = await depthsSvg(simulation);
   return await writeFiles(folder, [
     ["spectrum.csv", spectrumCsv(simulation)],
     ["result.json", `${JSON.stringify(simulation.result, null, 2)}\n`],
     ["spectrum.svg", await spectrumSvg(simulation)],
+    ...(depths === null ? [] : [["depths.svg", depths] as const]),
   ]);
 }

@@ -19,6 +19,8 @@ export interface Template {
   readonly cutoffEv: number;
   /** Where the Fermi edge is recorded, eV. */
   readonly fermiEdgeEv: number;
+  /** Resolution, full width at half maximum, eV. */
+  readonly resolutionFwhmEv: number;
 }
 
 /** A template simulated at another value of one parameter. */
@@ -58,11 +60,15 @@ export interface TemplateFamily {
   readonly fermiEdgesEv: readonly number[];
 }
 
-/** Scattered counts below this share of their highest change by the ratio of the sums: their own is a ratio of noise. */
+/** Of scattered counts below this share of their highest the difference is taken, since their ratio would be of noise. */
 const LEAST_SCATTERED = 1e-4;
 /** Polynomials that may describe a ratio of scattered counts, and how significant each must be to be kept. */
-const MOST_POLYNOMIALS = 13;
+const POLYNOMIALS = 13;
 const SIGNIFICANT = 3;
+/** Functions are about the cutoff where it may change its shape by itself (patches, spread of the work function), eV. */
+const CUTOFF_REACH_EV = 0.6;
+/** A function of which less than this is left after those before it says nothing new. */
+const INDEPENDENT = 1e-3;
 /** Noise of a change, as a share of the counting variance, that is taken as it is. */
 const SMALL_NOISE = 0.05;
 
@@ -75,10 +81,10 @@ const SMALL_NOISE = 0.05;
  * the same sum of counts, since the intensity is free in every match.
  *
  * Where a parameter changes the histories, common random numbers keep little of their promise: after the first different
- * event two histories are strangers. Then the ratio of scattered counts of the pair (node, base) is taken, since it varies
- * slowly with energy, in polynomials orthogonal over the spectrum, of which only those are kept that are larger than
- * three standard errors (from the scatter of the groups); hard thresholding: D. Donoho, I. Johnstone, Biometrika 81, 425
- * (1994). The direct part has no noise and is taken as it is.
+ * event two histories are strangers. Then the ratio of scattered counts of the pair (node, base), which varies slowly with
+ * energy, is taken as a sum of polynomials, and what is left about the cutoff as a sum of Gaussians as narrow as the
+ * resolution; of both only those are kept that are larger than three standard errors (from the scatter of the groups).
+ * Hard thresholding: D. Donoho, I. Johnstone, Biometrika 81, 425 (1994). The direct part has no noise and is taken as it is.
  *
  * @param parameter Name, unit, value of the base and the range of a fit.
  * @param base Template of the base scenario.
@@ -155,46 +161,57 @@ function changeOf(base: Template, template: Template, reference: Template | null
     return { mean: ofEqualSum(base, mean, scaleOf(base, mean)), groups: [] };
   }
   const direct = minus(onBase(template.direct), base.direct);
-  const scattered = minus(base.counts, base.direct);
-  const ratioOf = (node: Float64Array, of: Float64Array): Float64Array => {
-    const above = onBase(minus(node, template.direct));
-    const below = minus(of, reference.direct);
-    const least = LEAST_SCATTERED * below.reduce((a, b) => Math.max(a, b), 0);
-    const overall = sumOf(above) / sumOf(below) - 1;
-    return above.map((value, i) => (below[i] > least ? value / below[i] - 1 : overall));
-  };
-  let ratio = ratioOf(template.counts, reference.counts);
-  let groups: readonly Float64Array[] = template.groups.map((group, g) =>
-    ratioOf(group, reference.groups[g])
-  );
-  const noise = standardErrors(groups, ratio);
-  const share = noise.reduce(
-    (sum, error, i) => sum + (error * scattered[i]) ** 2 / Math.max(1, base.counts[i]),
-    0,
-  ) / noise.length;
-  if (share > SMALL_NOISE) {
-    const smooth = significantPart(ratio, groups, noise, scattered);
-    ratio = smooth.mean;
-    groups = smooth.groups;
-  }
-  const toChange = (values: Float64Array): Float64Array =>
-    values.map((value, i) => direct[i] + scattered[i] * value);
-  const mean = toChange(ratio);
+  const scattered = changeOfScattered(base, template, reference, onBase);
+  const mean = direct.map((value, i) => value + scattered.mean[i]);
   const scale = scaleOf(base, mean);
   return {
     mean: ofEqualSum(base, mean, scale),
-    groups: groups.map((group) => ofEqualSum(base, toChange(group), scale)),
+    groups: scattered.groups.map((group) =>
+      ofEqualSum(base, direct.map((value, i) => value + group[i]), scale)
+    ),
   };
 }
 
-/** By how much a changed spectrum must be multiplied to have as many counts as the base. */
-function scaleOf({ counts }: Template, change: Float64Array): number {
-  return sumOf(counts) / (sumOf(counts) + sumOf(change));
-}
+/** Change of the scattered counts of the base, from a pair with common random numbers. */
+function changeOfScattered(
+  base: Template,
+  template: Template,
+  reference: Template,
+  onBase: (values: Float64Array) => Float64Array,
+): Change {
+  const scattered = minus(base.counts, base.direct);
+  const least = LEAST_SCATTERED * scattered.reduce((a, b) => Math.max(a, b), 0);
+  const pairOf = (node: Float64Array, of: Float64Array) => ({
+    above: onBase(minus(node, template.direct)),
+    below: minus(of, reference.direct),
+  });
+  const pair = pairOf(template.counts, reference.counts);
+  const pairs = template.groups.map((group, g) => pairOf(group, reference.groups[g]));
+  const ratioOf = ({ above, below }: typeof pair): Float64Array =>
+    above.map((value, i) => (pair.below[i] > least && below[i] > 0 ? value / below[i] - 1 : 0));
+  const raw = (of: typeof pair): Float64Array =>
+    ratioOf(of).map((ratio, i) => pair.below[i] > least ? ratio * scattered[i] : of.above[i] - of.below[i]);
+  const plain = { mean: raw(pair), groups: pairs.map(raw) };
+  const errors = standardErrors(plain.groups, plain.mean);
+  const noise = errors.reduce((sum, error, i) => sum + error ** 2 / Math.max(1, base.counts[i]), 0);
+  if (noise <= SMALL_NOISE * errors.length) return plain;
 
-/** A change after the changed spectrum was scaled: intensities are free, and without them changes are smoother. */
-function ofEqualSum({ counts }: Template, change: Float64Array, scale: number): Float64Array {
-  return change.map((value, i) => scale * value + (scale - 1) * counts[i]);
+  const slow = { mean: ratioOf(pair), groups: pairs.map(ratioOf) };
+  const ratio = significantPart(
+    slow,
+    polynomials(base.counts.length),
+    standardErrors(slow.groups, slow.mean).map((error, i) => (pair.below[i] > least ? error : 0)),
+  );
+  const rest = (of: typeof pair, part: Float64Array): Float64Array =>
+    of.above.map((value, i) => value - of.below[i] * (1 + part[i]));
+  const fast = { mean: rest(pair, ratio.mean), groups: pairs.map((of, g) => rest(of, ratio.groups[g])) };
+  const atCutoff = significantPart(fast, bumps(base), standardErrors(fast.groups, fast.mean));
+  const sum = (slowPart: Float64Array, fastPart: Float64Array): Float64Array =>
+    slowPart.map((value, i) => value * scattered[i] + fastPart[i]);
+  return {
+    mean: sum(ratio.mean, atCutoff.mean),
+    groups: ratio.groups.map((group, g) => sum(group, atCutoff.groups[g])),
+  };
 }
 
 /** Reads values of a template at the energies of the base, both edges in line. */
@@ -208,62 +225,77 @@ function registration(template: Template, base: Template): (values: Float64Array
   };
 }
 
-/** The polynomials in a ratio that stand out from the noise. */
-function significantPart(
-  ratio: Float64Array,
-  groups: readonly Float64Array[],
-  errors: Float64Array,
-  scattered: Float64Array,
-): Change {
-  const least = LEAST_SCATTERED * scattered.reduce((a, b) => Math.max(a, b), 0);
-  const weights = errors.map((error, i) => (error > 0 && scattered[i] > least ? 1 / (error * error) : 0));
-  const polynomials = orthogonalPolynomials(weights);
-  const mean = ratio.map((value, i) => (weights[i] === 0 ? value : 0));
-  const parts = groups.map((group) => group.map((value, i) => (weights[i] === 0 ? value : 0)));
-  const product = (a: Float64Array, b: Float64Array): number =>
-    a.reduce((sum, value, i) => sum + weights[i] * value * b[i], 0);
-  for (const polynomial of polynomials) {
-    const coefficient = product(polynomial, ratio);
-    const ofGroups = groups.map((group) => product(polynomial, group));
-    const scatter = ofGroups.reduce((sum, value) => sum + (value - coefficient) ** 2, 0);
-    const error = Math.sqrt(scatter / (groups.length * (groups.length - 1)));
-    if (Math.abs(coefficient) < SIGNIFICANT * error) continue;
-    for (let i = 0; i < mean.length; i++) {
-      if (weights[i] === 0) continue;
-      mean[i] += coefficient * polynomial[i];
-      for (let g = 0; g < parts.length; g++) parts[g][i] += ofGroups[g] * polynomial[i];
-    }
-  }
-  return { mean, groups: parts };
-}
-
 /**
- * Polynomials of the channel number, orthonormal under the weights, by the three-term recurrence (G. Forsythe, J. SIAM 5,
- * 74 (1957)).
+ * The part of a noisy curve that functions describe, each kept only where it is larger than three standard errors.
+ *
+ * The functions are made orthonormal in their order, weighted by the errors (G. Forsythe, J. SIAM 5, 74 (1957)).
  */
-function orthogonalPolynomials(weights: Float64Array): Float64Array[] {
-  const n = weights.length;
-  const x = Float64Array.from(weights, (_, i) => (2 * i) / (n - 1) - 1);
-  const polynomials: Float64Array[] = [];
-  const product = (a: Float64Array, b: Float64Array): number =>
-    a.reduce((sum, value, i) => sum + weights[i] * value * b[i], 0);
-  while (polynomials.length < MOST_POLYNOMIALS) {
-    const previous = polynomials.at(-1);
-    const next = previous === undefined
-      ? new Float64Array(n).fill(1)
-      : previous.map((value, i) => value * x[i]);
+function significantPart(of: Change, functions: Iterable<Float64Array>, errors: Float64Array): Change {
+  const weights = errors.map((error) => (error > 0 ? 1 / (error * error) : 0));
+  const product = (a: Float64Array, b: Float64Array): number => {
+    let sum = 0;
+    for (let i = 0; i < weights.length; i++) sum += weights[i] * a[i] * b[i];
+    return sum;
+  };
+  const mean = new Float64Array(errors.length);
+  const groups = of.groups.map(() => new Float64Array(errors.length));
+  const orthonormal: Float64Array[] = [];
+  for (const given of functions) {
+    const next = given.slice();
+    const length = product(next, next);
     // Twice, so that rounding errors stay out.
     for (let pass = 0; pass < 2; pass++) {
-      for (const polynomial of polynomials.slice(-2)) {
-        const share = product(next, polynomial);
-        for (let i = 0; i < n; i++) next[i] -= share * polynomial[i];
+      for (const earlier of orthonormal) {
+        const share = product(next, earlier);
+        for (let i = 0; i < next.length; i++) next[i] -= share * earlier[i];
       }
     }
     const norm = Math.sqrt(product(next, next));
-    if (!(norm > 0)) break;
-    polynomials.push(next.map((value) => value / norm));
+    if (!(norm > INDEPENDENT * Math.sqrt(length))) continue;
+    const unit = next.map((value) => value / norm);
+    orthonormal.push(unit);
+    const coefficient = product(unit, of.mean);
+    const ofGroups = of.groups.map((group) => product(unit, group));
+    const scatter = ofGroups.reduce((sum, value) => sum + (value - coefficient) ** 2, 0);
+    const error = Math.sqrt(scatter / (ofGroups.length * (ofGroups.length - 1)));
+    if (Math.abs(coefficient) < SIGNIFICANT * error) continue;
+    for (let i = 0; i < mean.length; i++) {
+      mean[i] += coefficient * unit[i];
+      for (let g = 0; g < groups.length; g++) groups[g][i] += ofGroups[g] * unit[i];
+    }
   }
-  return polynomials;
+  return { mean, groups };
+}
+
+/** Polynomials of the channel number; Chebyshev's, so that none is nearly a sum of the others. */
+function* polynomials(channels: number): Generator<Float64Array> {
+  for (let degree = 0; degree < POLYNOMIALS; degree++) {
+    yield Float64Array.from(
+      { length: channels },
+      (_, i) => Math.cos(degree * Math.acos((2 * i) / (channels - 1) - 1)),
+    );
+  }
+}
+
+/** Gaussians side by side about the cutoff, as narrow as the resolution. */
+function* bumps({ counts, startEv, stepEv, cutoffEv, resolutionFwhmEv }: Template): Generator<Float64Array> {
+  const distanceEv = 0.5 * resolutionFwhmEv;
+  for (let centerEv = -CUTOFF_REACH_EV; centerEv <= CUTOFF_REACH_EV; centerEv += distanceEv) {
+    yield counts.map((_, i) =>
+      Math.exp(-0.5 * ((startEv + i * stepEv - cutoffEv - centerEv) / distanceEv) ** 2)
+    );
+  }
+}
+
+/** By how much a changed spectrum must be multiplied to have as many counts as the base. */
+function scaleOf({ counts, darkCounts }: Template, change: Float64Array): number {
+  const electrons = sumOf(counts) - counts.length * darkCounts;
+  return electrons / (electrons + sumOf(change));
+}
+
+/** A change after the changed spectrum was scaled: intensities are free, and without them changes are smoother. */
+function ofEqualSum({ counts, darkCounts }: Template, change: Float64Array, scale: number): Float64Array {
+  return change.map((value, i) => scale * value + (scale - 1) * (counts[i] - darkCounts));
 }
 
 /** Standard errors of a mean of groups. */

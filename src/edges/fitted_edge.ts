@@ -60,6 +60,9 @@ export interface IntervalOptions {
   readonly bootstrap: { readonly replicates: number; readonly seed: number; readonly stream: number };
 }
 
+/** Refits of a bootstrap need no more digits than its standard deviation has, in standard errors. */
+const REFIT_TOLERANCE = 0.02;
+
 /** The covariance is enough. */
 export const NO_INTERVALS: IntervalOptions = {
   profile: false,
@@ -137,7 +140,13 @@ function bootstrapped(
   const positionsEv = new Float64Array(replicates).map((_, replicate) => {
     const generator = new Xoshiro128pp(streamState(seed, "replicate", replicate + stream * 2 ** 32));
     const data = expected.map((mean) => samplePoisson(mean, generator));
-    const again = minimizePoisson({ ...problem, parameters, expected, data });
+    const again = minimizePoisson({
+      ...problem,
+      parameters,
+      expected,
+      data,
+      roundTolerance: REFIT_TOLERANCE,
+    });
     return again.converged ? again.values[0] : NaN;
   });
   const sorted = positionsEv.filter((value) => !Number.isNaN(value)).sort();

@@ -5,6 +5,11 @@ import { type FitProblem, type FitResult, minimize } from "./minimize.ts";
 export interface PoissonProblem extends Omit<FitProblem, "sigma"> {
   /** Expected counts near the answer, such as an earlier fit: the first variances. Default: smoothed counts. */
   readonly expected?: Float64Array;
+  /**
+   * Rounds end when no parameter moves by more than this share of its standard error, which counts as larger by
+   * sqrt(chi-square / degrees of freedom) where that is above 1. Default: 0.001.
+   */
+  readonly roundTolerance?: number;
 }
 
 /** A maximum-likelihood fit; `chiSquare` is Pearson's, with the variance of the model. */
@@ -23,16 +28,13 @@ export interface PoissonFit extends FitResult {
  * and the variance of an empty spectrum would be zero.
  */
 const LEAST_VARIANCE = 0.05;
-const MOST_ROUNDS = 15;
+const MOST_ROUNDS = 40;
 /** Steps of a round end below this, in standard errors: the next round moves the target anyway. */
 const STEP_TOLERANCE = 1e-3;
 /** A round need not reach its minimum; so many steps are enough near the answer. */
 const STEPS_A_ROUND = 12;
 const FIRST_STEPS = 60;
-/**
- * Rounds end when no parameter moves by more than this share of its standard error, which counts as larger by
- * sqrt(chi-square / degrees of freedom) where that is above 1.
- */
+/** See {@link PoissonProblem}. */
 const ROUND_TOLERANCE = 1e-3;
 
 /**
@@ -87,7 +89,8 @@ export function minimizePoisson(problem: PoissonProblem): PoissonFit {
       Math.abs(fit.values[j] - start) / fit.standardErrors[j] || 0
     );
     const inflation = Math.sqrt(Math.max(1, fit.chiSquare / Math.max(1, fit.degreesOfFreedom)));
-    settled = round > 0 && fit.converged && Math.max(...moved) < ROUND_TOLERANCE * inflation;
+    settled = round > 0 && fit.converged &&
+      Math.max(...moved) < (problem.roundTolerance ?? ROUND_TOLERANCE) * inflation;
     if (settled || round === MOST_ROUNDS) break;
     parameters = parameters.map((parameter, j) => ({ ...parameter, start: fit.values[j] }));
     variance = fit.fitted.map((mean) => Math.max(mean, LEAST_VARIANCE));

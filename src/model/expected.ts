@@ -63,8 +63,8 @@ export function expectedSpectrum(
     return response.photonsPerS * resolved.detectionFraction * transmission *
       windowEv(resolved.resolutionFwhmEv);
   });
-  const forced = groupStatistics(tally, (group) => response.densityOf(group.forced));
-  const analogue = groupStatistics(tally, (group) => response.densityOf(group.analogue));
+  const forced = groupStatistics(tally, channels, (group) => response.densityOf(group.forced));
+  const analogue = groupStatistics(tally, channels, (group) => response.densityOf(group.analogue));
   const toCounts = (mean: (c: number) => number, error: Float64Array) =>
     expectedCounts(
       ratePerDensity.map((rate, c) => rate * mean(c)),
@@ -73,16 +73,16 @@ export function expectedSpectrum(
     );
   const expected = toCounts((c) => response.direct[c] + forced.mean[c], forced.error);
   const counted = toCounts((c) => analogue.mean[c], analogue.error);
-  const scattered = groupStatistics(tally, (group) => response.totalOf(group.forced));
-  const seen = groupStatistics(tally, (group) => response.totalOf(group.analogue));
+  const scattered = groupStatistics(tally, 1, (group) => response.totalOf(group.forced));
+  const seen = groupStatistics(tally, 1, (group) => response.totalOf(group.analogue));
   return {
     kineticEnergiesEv,
     counts: expected.counts,
     standardErrors: expected.standardErrors,
     analogueCounts: counted.counts,
     analogueStandardErrors: counted.standardErrors,
-    electronsPerPhoton: response.directTotal + (scattered.mean[0] ?? 0),
-    analoguePerPhoton: { value: seen.mean[0] ?? 0, standardError: seen.error[0] ?? 0 },
+    electronsPerPhoton: response.directTotal + scattered.mean[0],
+    analoguePerPhoton: { value: seen.mean[0], standardError: seen.error[0] },
     levels: engine.kind === "pair" ? [] : expectedLevels(resolved, engine, tally),
   };
 }
@@ -122,18 +122,18 @@ export function countSpectrum(spectrum: ExpectedSpectrum, seed: number, replicat
 /** Means and standard errors from the scatter between groups (weights by histories). */
 function groupStatistics(
   tally: Tally,
+  count: number,
   valuesOf: (group: Tally["groups"][number]) => Float64Array,
 ): { mean: Float64Array; error: Float64Array } {
-  let mean = new Float64Array(0);
-  let squares = new Float64Array(0);
+  const mean = new Float64Array(count);
+  const squares = new Float64Array(count);
   let weight = 0;
   let groups = 0;
   for (const group of tally.groups) {
     const values = valuesOf(group);
-    if (groups === 0) [mean, squares] = [new Float64Array(values.length), new Float64Array(values.length)];
     weight += group.histories;
     groups++;
-    for (let c = 0; c < values.length; c++) {
+    for (let c = 0; c < count; c++) {
       // Weighted running mean and sum of squares: D. West, Commun. ACM 22, 532 (1979).
       const delta = values[c] / group.histories - mean[c];
       const share = (delta * group.histories) / weight;

@@ -11,6 +11,7 @@ export type {
   ChargingSettings,
   GeometrySettings,
   LayerSettings,
+  LightCommon,
   LightSettings,
   PatchSettings,
   SampleSettings,

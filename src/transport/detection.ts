@@ -95,20 +95,22 @@ function coneBeforeField(input: DetectionInput, outsideEv: number, arrivingEv: n
   return sine < 1 ? Math.asin(sine) : Math.PI / 2;
 }
 
-/** Ends of `sqrt(E_out cos^2 theta_out)` between which the acceptance is not zero. */
-function normalMomentumRange(input: DetectionInput, energyEv: number): [number, number] {
+/**
+ * Values of `sqrt(E_out cos^2 theta_out)` between which the accepted share is smooth and not zero, ascending: where a cone
+ * that holds the normal is not centered on it, all azimuths are accepted below the middle value's angle.
+ */
+function normalMomentumPieces(input: DetectionInput, energyEv: number): number[] {
   const outside = energyEv - input.workFunctionEv;
   const arriving = outside + input.accelerationEv;
-  if (!(outside > 0) || !(arriving > 0)) return [0, 0];
+  if (!(outside > 0) || !(arriving > 0)) return [];
   const tilt = input.facetTiltRad ?? 0;
   const axis = tilt > 0 ? tilt : input.emissionAngleRad;
   const half = tilt > 0 ? coneBeforeField(input, outside, arriving) : input.acceptanceHalfAngleRad;
   const frame = tilt > 0 ? outside : arriving;
   const steepest = Math.min(Math.PI / 2, axis + half);
-  const flattest = Math.max(0, axis - half);
-  const lowest = Math.max(0, outside - frame * Math.sin(steepest) ** 2);
-  const highest = outside - frame * Math.sin(flattest) ** 2;
-  return highest > lowest ? [Math.sqrt(lowest), Math.sqrt(highest)] : [0, 0];
+  const angles = axis > 0 && axis < half ? [steepest, half - axis, 0] : [steepest, Math.max(0, axis - half)];
+  const momenta = angles.map((angle) => Math.sqrt(Math.max(0, outside - frame * Math.sin(angle) ** 2)));
+  return momenta.filter((momentum, i) => i === 0 || momentum > momenta[i - 1]);
 }
 
 /**
@@ -144,22 +146,24 @@ export function detectionTable(input: DetectionInput): DetectionTable {
       const energyEv = low + 0.5 * width * (1 + ENERGY_RULE.nodes[e]);
       const energyShare = 0.5 * ENERGY_RULE.weights[e] * (width / grid.stepEv);
       const insideEv = energyEv + bandBottomBelowFermiEv;
-      const [from, to] = normalMomentumRange(input, energyEv);
-      const halfRange = 0.5 * (to - from);
-      if (halfRange === 0) continue;
-      for (let d = 0; d < DIRECTION_RULE.nodes.length; d++) {
-        const t = 0.5 * (1 + DIRECTION_RULE.nodes[d]);
-        const q = 0.5 * (from + to) - halfRange * Math.cos(Math.PI * t);
-        const mu = Math.sqrt((barrierEv + q * q) / insideEv);
-        const slope = halfRange * Math.PI * Math.sin(Math.PI * t) * (q / (insideEv * mu));
-        const weight = 0.5 * energyShare * 0.5 * DIRECTION_RULE.weights[d] * slope *
-          barrierTransmission(input, energyEv, mu) * acceptedShare(input, energyEv, mu);
-        if (weight === 0) continue;
-        const decay = Math.exp(-1 / (input.cellsPerPath * mu));
-        let value = weight * (1 - decay) * mu * input.cellsPerPath;
-        for (let c = 0; c < cells && value > 1e-30; c++) {
-          row[c] += value;
-          value *= decay;
+      const pieces = normalMomentumPieces(input, energyEv);
+      for (let p = 0; p < pieces.length - 1; p++) {
+        const [from, to] = [pieces[p], pieces[p + 1]];
+        const halfRange = 0.5 * (to - from);
+        for (let d = 0; d < DIRECTION_RULE.nodes.length; d++) {
+          const t = 0.5 * (1 + DIRECTION_RULE.nodes[d]);
+          const q = 0.5 * (from + to) - halfRange * Math.cos(Math.PI * t);
+          const mu = Math.sqrt((barrierEv + q * q) / insideEv);
+          const slope = halfRange * Math.PI * Math.sin(Math.PI * t) * (q / (insideEv * mu));
+          const weight = 0.5 * energyShare * 0.5 * DIRECTION_RULE.weights[d] * slope *
+            barrierTransmission(input, energyEv, mu) * acceptedShare(input, energyEv, mu);
+          if (weight === 0) continue;
+          const decay = Math.exp(-1 / (input.cellsPerPath * mu));
+          let value = weight * (1 - decay) * mu * input.cellsPerPath;
+          for (let c = 0; c < cells && value > 1e-30; c++) {
+            row[c] += value;
+            value *= decay;
+          }
         }
       }
     }

@@ -152,7 +152,11 @@ export function directLines(medium: LossMedium): DirectLine[] {
       if (!(lowerNm > upperNm)) break;
       const share = source.perNm * source.directWeight * (lowerNm - upperNm) * probability[first + c];
       electrons += share;
-      byDepth[Math.min(DEPTH_CELLS - 1, Math.floor((0.5 * (upperNm + lowerNm)) / depth))] += share;
+      const last = Math.min(DEPTH_CELLS - 1, Math.floor(lowerNm / depth));
+      for (let d = Math.min(last, Math.floor(upperNm / depth)); d <= last; d++) {
+        const endNm = d === last ? lowerNm : (d + 1) * depth;
+        byDepth[d] += (share * (endNm - Math.max(upperNm, d * depth))) / (lowerNm - upperNm);
+      }
     }
     return { electrons, byDepth, depthCellNm: depth };
   });

@@ -1,4 +1,5 @@
 import assert from "node:assert/strict";
+import { textsOf } from "../support/drawing.ts";
 import { goldRun, inFolder, namesIn, twoedge } from "../support/twoedge.ts";
 
 type Files = Record<string, string>;
@@ -258,5 +259,30 @@ Deno.test("fit --plot and simulate --plot draw text of 80 columns without contro
     const each = await twoedge(folder, "fit", "a.csv", "--plot", "--each");
     assert.equal(each.code, 2);
     assert.match(each.stderr, /--plot must not be given with --each/);
+  });
+});
+
+Deno.test("simulate also draws where electrons come from when there are core levels, and report shows it", async () => {
+  const scenario = new URL("../../scenarios/gold_under_aluminum_al_kalpha.json", import.meta.url).pathname;
+  await inFolder({}, async (folder) => {
+    const { code, stderr } = await twoedge(
+      folder,
+      "simulate",
+      scenario,
+      "--histories",
+      "8192",
+      "--out",
+      "au",
+    );
+    assert.equal(code, 0, stderr);
+    const texts = textsOf(await Deno.readTextFile(`${folder}/au/depths.svg`));
+    const depth = JSON.parse(await Deno.readTextFile(`${folder}/au/result.json`)).levels
+      .find(({ name }: { name: string }) => name === "Au 4f7/2").informationDepth95Nm;
+    assert.ok(
+      texts.includes(`information depth (95 %) of Au 4f7/2: ${depth.toFixed(2)} nm`),
+      texts.join(" | "),
+    );
+    assert.equal((await twoedge(folder, "report", "au")).code, 0);
+    assert.match(await Deno.readTextFile(`${folder}/au/report.html`), /Depths that electrons come from/);
   });
 });

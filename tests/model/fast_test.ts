@@ -5,7 +5,7 @@ import { parseScenario, resolveScenario } from "../../src/scenario/mod.ts";
 import { assertClose } from "../support/assert_close.ts";
 
 const TEXT = await Deno.readTextFile(
-  new URL("../../scenarios/gold_under_carbon_al_kalpha.json", import.meta.url),
+  new URL("../../scenarios/gold_under_aluminum_al_kalpha.json", import.meta.url),
 );
 
 function spectrum(...overrides: string[]) {
