@@ -241,7 +241,7 @@ function significantPart(of: Change, functions: Iterable<Float64Array>, errors: 
   const groups = of.groups.map(() => new Float64Array(errors.length));
   const orthonormal: Float64Array[] = [];
   for (const given of functions) {
-    const next = given.slice();
+    const next = given.map((value, i) => (weights[i] > 0 ? value : 0));
     const length = product(next, next);
     // Twice, so that rounding errors stay out.
     for (let pass = 0; pass < 2; pass++) {

@@ -8,7 +8,6 @@ export { type BudgetTerm, type ExpandedUncertainty, expandedUncertainty, type Qu
 export { calibrateScale, type ReferenceLine, type ScaleCalibration } from "./calibration.ts";
 export { type CutoffConvention, type CutoffConventions } from "./conventions.ts";
 export { type CutoffOptions, fitCutoff, type FittedCutoff } from "./cutoff.ts";
-export type { AcceptanceRamp } from "./cutoff_model.ts";
 export { type AcceptanceRamp } from "./cutoff_model.ts";
 export { type BadChannels, badChannels, deadTimeCorrected } from "./data_checks.ts";
 export { type AxisKnowledge, type EnergyReference, energyReferences } from "./energy_reference.ts";

@@ -1,6 +1,6 @@
 import { levenbergMarquardt } from "ml-levenberg-marquardt";
 import { cannot } from "../base/mod.ts";
-import { dot, tangent } from "./tangent.ts";
+import { dot, type Tangent, tangent } from "./tangent.ts";
 
 /** One parameter of a fit. */
 export interface FitParameter {
@@ -107,8 +107,9 @@ interface Point {
  * Weighted nonlinear least squares by the Levenberg-Marquardt method (D. Marquardt, J. Soc. Indust. Appl. Math. 11, 431
  * (1963)).
  *
- * Each step is one iteration of the library ml-levenberg-marquardt on residuals divided by their standard deviations and
- * on parameters scaled by the columns of the Jacobian, which makes its damping Marquardt's. Whether a step is taken, the
+ * Each step is one iteration of the library ml-levenberg-marquardt on residuals divided by their standard deviations,
+ * reduced to as many equations as there are parameters, and on parameters scaled by the columns of the Jacobian, which
+ * makes its damping Marquardt's. Whether a step is taken, the
  * damping, bounds, convergence and covariance are decided here, since the library never rejects a step and knows no
  * covariance. A step to where the model is not finite is rejected.
  *
@@ -140,7 +141,6 @@ export function minimize(problem: FitProblem): FitResult {
   const upper = parameters.map((parameter) => parameter.upper ?? Infinity);
   const scales = parameters.map(({ scale, start }) => scale ?? (start === 0 ? 1 : Math.abs(start)));
   const data = problem.data.map((value, i) => value / sigma[i]);
-  const indices = Float64Array.from({ length: n }, (_, i) => i);
   let evaluations = 0;
 
   function evaluate(values: Float64Array): Point {
@@ -186,23 +186,11 @@ export function minimize(problem: FitProblem): FitResult {
   }
 
   /** One damped step of the library; its parameters are distances from the point, in lengths of the columns. */
-  function libraryStep(
-    from: Point,
-    free: readonly number[],
-    columns: readonly Float64Array[],
-    norms: readonly number[],
-    damping: number,
-  ): Point {
-    let latest = from;
-    levenbergMarquardt(
-      { x: indices, y: data },
-      (distances: number[]) => {
-        const values = from.values.slice();
-        free.forEach((j, f) => values[j] = clamp(values[j] + distances[f] / norms[f], lower[j], upper[j]));
-        latest = values.every((value, j) => value === from.values[j]) ? from : evaluate(values);
-        const { model } = latest;
-        return (i: number) => model[i];
-      },
+  function libraryStep(from: Point, free: readonly number[], plane: Tangent, damping: number): Point {
+    const { norms, reduced: { rows, target } } = plane;
+    const { parameterValues } = levenbergMarquardt(
+      { x: target.map((_, i) => i), y: target as number[] },
+      (distances: number[]) => (i: number) => dot(rows[i], distances),
       {
         initialValues: free.map(() => 0),
         damping,
@@ -210,11 +198,12 @@ export function minimize(problem: FitProblem): FitResult {
         errorTolerance: 0,
         minValues: free.map((j, f) => (lower[j] - from.values[j]) * norms[f]),
         maxValues: free.map((j, f) => (upper[j] - from.values[j]) * norms[f]),
-        jacobianFunction: () => (i: number) => columns.map((column, f) => column[i] / norms[f]),
+        jacobianFunction: () => (i: number) => rows[i] as number[],
       },
     );
-    // The library returns its start where the step does not help, but what it tried is what it evaluated last.
-    return latest;
+    const values = from.values.slice();
+    free.forEach((j, f) => values[j] = clamp(values[j] + parameterValues[f] / norms[f], lower[j], upper[j]));
+    return values.every((value, j) => value === from.values[j]) ? from : evaluate(values);
   }
 
   let point = evaluate(Float64Array.from(parameters, (parameter) => parameter.start));
@@ -235,8 +224,8 @@ export function minimize(problem: FitProblem): FitResult {
       settled = true;
       break;
     }
-    const freeColumns = free.map((j) => columns[j]);
-    const { norms, offset } = tangent(freeColumns, point.residuals);
+    const plane = tangent(free.map((j) => columns[j]), point.residuals);
+    const { offset } = plane;
     const inflation = Math.sqrt(Math.max(1, point.chiSquare / Math.max(1, n - free.length)));
     const isClose = offset <= CLOSE * inflation;
     const noise = ROUNDING * point.chiSquare;
@@ -245,11 +234,11 @@ export function minimize(problem: FitProblem): FitResult {
 
     // Close to the minimum chi-square no longer falls visibly, but the distance does.
     const highest = point.chiSquare + (isClose ? noise : -noise);
-    let next = libraryStep(point, free, freeColumns, norms, damping);
+    let next = libraryStep(point, free, plane, damping);
     // Also true of NaN.
     while (!(next.chiSquare <= highest) && !settled && damping < DAMPING_MOST) {
       damping *= DAMPING_UP;
-      next = libraryStep(point, free, freeColumns, norms, damping);
+      next = libraryStep(point, free, plane, damping);
     }
     if (next.chiSquare <= highest) {
       previous = { offset, fall: point.chiSquare - next.chiSquare };

@@ -6,11 +6,19 @@ export interface Tangent {
   readonly norms: readonly number[];
   /** Length of the projection of the residuals on the plane: expected distance to the minimum, in standard errors. */
   readonly offset: number;
+  /**
+   * Linear problem of p equations with the same normal equations as the n of the scaled Jacobian: `R^T R = J^T J` and
+   * `R^T target = J^T residuals`, from `R = sqrt(eigenvalues) V^T`.
+   */
+  readonly reduced: { readonly rows: readonly (readonly number[])[]; readonly target: readonly number[] };
   /** Inverse of J^T J, shape (p x p); null when a column depends on the others. */
   readonly covariance: Matrix | null;
   /** Column with the largest share in the direction that is least determined. */
   readonly weakest: number;
 }
+
+/** The minimizing library takes no fewer equations; those missing are 0 = 0. */
+const LEAST_EQUATIONS = 3;
 
 /** Smallest eigenvalue of the scaled J^T J, relative to the largest, that still determines a direction. */
 const SINGULAR = 1e-13;
@@ -38,10 +46,14 @@ export function tangent(columns: readonly Float64Array[], residuals: Float64Arra
   const least = SINGULAR * Math.max(...realEigenvalues);
   const gradient = columns.map((column, a) => dot(column, residuals) / norms[a]);
   const covariance = Matrix.zeros(columns.length, columns.length);
+  const rows: number[][] = [];
+  const target: number[] = [];
   let squaredOffset = 0;
   realEigenvalues.forEach((eigenvalue, e) => {
     if (!(eigenvalue > least)) return;
     const direction = eigenvectorMatrix.getColumn(e);
+    rows.push(direction.map((value) => Math.sqrt(eigenvalue) * value));
+    target.push(dot(direction, gradient) / Math.sqrt(eigenvalue));
     squaredOffset += dot(direction, gradient) ** 2 / eigenvalue;
     for (let a = 0; a < columns.length; a++) {
       for (let b = 0; b < columns.length; b++) {
@@ -50,11 +62,16 @@ export function tangent(columns: readonly Float64Array[], residuals: Float64Arra
       }
     }
   });
+  while (rows.length < LEAST_EQUATIONS) {
+    rows.push(columns.map(() => 0));
+    target.push(0);
+  }
   const smallest = Math.min(...realEigenvalues);
   const shares = eigenvectorMatrix.getColumn(realEigenvalues.indexOf(smallest)).map(Math.abs);
   return {
     norms,
     offset: Math.sqrt(squaredOffset),
+    reduced: { rows, target },
     covariance: smallest > least ? covariance : null,
     weakest: shares.indexOf(Math.max(...shares)),
   };
