@@ -1,8 +1,9 @@
 /**
- * Room `base`: errors and messages that every other room may use. Imports nothing.
+ * Room `base`: errors and messages that every other room may use. Imports no other room.
  *
  * @module
  */
 export { cannot, InputError, type Problem, suggest } from "./errors.ts";
+export { type JsonText, pointerStep, readJsonText } from "./json_text.ts";
 export { VERSION } from "./version.ts";
 export type { Estimate, Notice } from "./values.ts";

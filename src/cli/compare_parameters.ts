@@ -136,10 +136,6 @@ export function suspectParameters(loaded: LoadedScenario): ScenarioParameter[] {
         }`,
       ],
     },
-    {
-      ...plain("sample.surface.workFunctionSpreadEv", 0, [0, 0.15], [0.05, 0.1, 0.15]),
-      isRigid: true,
-    },
     plain("sample.charging.fwhmEv", 0, [0, 1.5 * fwhm], [0.5 * fwhm, fwhm, 1.5 * fwhm]),
   ];
 }

@@ -1,5 +1,4 @@
-import { getNodeValue, type ParseError, parseTree, printParseErrorCode, stripComments } from "jsonc-parser";
-import { cannot, InputError, type Problem } from "../base/mod.ts";
+import { cannot, InputError, type Problem, readJsonText } from "../base/mod.ts";
 import { type Material, MATERIAL_IDS, parseMaterial } from "./materials.ts";
 
 /**
@@ -23,26 +22,11 @@ import { type Material, MATERIAL_IDS, parseMaterial } from "./materials.ts";
  * ```
  */
 export function materialFrom(text: string, fileName: string): Material {
-  const errors: ParseError[] = [];
-  const tree = parseTree(text, errors, { allowTrailingComma: true, allowEmptyContent: false });
-  if (errors.length > 0 || tree === undefined) {
-    const { error, offset } = errors[0] ?? { error: 0, offset: 0 };
-    const why = stripComments(text).trim() === "" ? "it is empty" : printParseErrorCode(error);
-    throw new InputError([{
-      place: `${fileName}:${text.slice(0, offset).split("\n").length}`,
-      message: cannot(
-        "read material",
-        `the file must be JSON (${why})`,
-        text.slice(offset, offset + 20).split("\n")[0],
-      ),
-    }]);
-  }
-  const problems: Problem[] = twice(tree).map((pointer) =>
-    problem(pointer, "each key may be given once", pointer.slice(pointer.lastIndexOf("/") + 1))
-  );
+  const { data, repeated } = readJsonText(text, fileName, "read material");
+  const problems: Problem[] = [...repeated];
   let found: Material | undefined;
   try {
-    found = parseMaterial(getNodeValue(tree));
+    found = parseMaterial(data);
     problems.push(...clashes(found));
   } catch (error) {
     if (!(error instanceof InputError)) throw error;
@@ -71,18 +55,4 @@ function clashes({ id, coreLevels }: Material): Problem[] {
         : []
     ),
   ];
-}
-
-/** Pointers to keys that an object has twice; the later one would win unseen. */
-function twice(node: NonNullable<ReturnType<typeof parseTree>>, pointer = ""): string[] {
-  if (node.type !== "object") {
-    return (node.children ?? []).flatMap((child, i) => twice(child, `${pointer}/${i}`));
-  }
-  const seen = new Set<string>();
-  return (node.children ?? []).flatMap(({ children: [key, value] = [] }) => {
-    const place = `${pointer}/${String(key.value).replaceAll("~", "~0").replaceAll("/", "~1")}`;
-    const again = seen.has(place) ? [place] : [];
-    seen.add(place);
-    return [...again, ...twice(value, place)];
-  });
 }

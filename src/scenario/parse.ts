@@ -1,6 +1,5 @@
-import { getNodeValue, type ParseError, parseTree, printParseErrorCode, stripComments } from "jsonc-parser";
 import { z } from "zod";
-import { cannot, InputError, type Problem, suggest } from "../base/mod.ts";
+import { cannot, InputError, pointerStep, type Problem, readJsonText, suggest } from "../base/mod.ts";
 import { LAMP_NAMES, MATERIAL_IDS } from "../data/mod.ts";
 import { applyOverrides } from "./overrides.ts";
 import type { Scenario } from "./types.ts";
@@ -173,61 +172,16 @@ export function scenarioJsonSchema(): Record<string, unknown> {
  * @throws {InputError} If the text is not JSON or breaks a rule.
  */
 export function parseScenario(text: string, fileName: string, overrides: readonly string[] = []): Scenario {
-  const errors: ParseError[] = [];
-  const tree = parseTree(text, errors, { allowTrailingComma: true, allowEmptyContent: false });
-  if (errors.length > 0 || tree === undefined) {
-    const { error, offset } = errors[0] ?? { error: 0, offset: 0 };
-    const line = text.slice(0, offset).split("\n").length;
-    const where = text.slice(offset, offset + 20).split("\n")[0];
-    throw new InputError([{
-      place: `${fileName}:${line}`,
-      message: cannot(
-        "read scenario",
-        `the file must be JSON (${
-          stripComments(text).trim() === "" ? "it is empty" : printParseErrorCode(error)
-        })`,
-        where,
-      ),
-    }]);
-  }
-  const duplicates = duplicateKeys(tree);
-  if (duplicates.length > 0) throw new InputError(duplicates);
-  const data = applyOverrides(
-    getNodeValue(tree),
-    overrides,
-    (keys) => schemaAt(keys) instanceof z.ZodString,
-  );
+  const { data: written, repeated } = readJsonText(text, fileName, "read scenario");
+  const data = applyOverrides(written, overrides, (keys) => schemaAt(keys) instanceof z.ZodString);
   const checked = scenario.safeParse(data, { reportInput: true });
   const problems = [
+    ...repeated,
     ...unknownMaterials(data),
     ...(checked.success ? crossChecks(checked.data) : checked.error.issues.flatMap(toProblems)),
   ];
   if (problems.length > 0) throw new InputError(problems);
   return checked.data as Scenario;
-}
-
-type Node = NonNullable<ReturnType<typeof parseTree>>;
-
-function duplicateKeys(node: Node, pointer = ""): Problem[] {
-  const problems: Problem[] = [];
-  const seen = new Set<string>();
-  for (const child of node.children ?? []) {
-    if (child.type !== "property" || child.children === undefined) {
-      problems.push(...duplicateKeys(child, pointer));
-      continue;
-    }
-    const [key, value] = child.children;
-    const place = pointer + pointerStep(key.value);
-    if (seen.has(key.value)) {
-      problems.push({
-        place,
-        message: cannot("read scenario", "each key may be given once", String(key.value)),
-      });
-    }
-    seen.add(key.value);
-    if (value) problems.push(...duplicateKeys(value, place));
-  }
-  return problems;
 }
 
 /** Materials that are neither built in nor possibly the user's own. */
@@ -304,11 +258,6 @@ const UNITS: readonly (readonly [RegExp, string])[] = [
   [/S$/, "s"],
   [/V$/, "V"],
 ];
-
-/** One step of a JSON pointer (RFC 6901, section 3). */
-function pointerStep(key: PropertyKey): string {
-  return `/${String(key).replaceAll("~", "~0").replaceAll("/", "~1")}`;
-}
 
 function toProblems(issue: z.core.$ZodIssue): Problem[] {
   const pointer = issue.path.map(pointerStep).join("");

@@ -1,6 +1,5 @@
-import { getNodeValue, type ParseError, parseTree, printParseErrorCode } from "jsonc-parser";
 import { z } from "zod";
-import { cannot, InputError, type Problem, suggest } from "../base/mod.ts";
+import { cannot, InputError, type Problem, readJsonText, suggest } from "../base/mod.ts";
 import type { Scenario } from "../scenario/mod.ts";
 import { axisCount } from "./axes.ts";
 import { RECORDED_NAMES } from "./recorded.ts";
@@ -68,22 +67,12 @@ export function sweepJsonSchema(): Record<string, unknown> {
  * @throws {InputError} If the text is not JSON or breaks a rule.
  */
 export function parseSweep(text: string, fileName: string): Sweep {
-  const errors: ParseError[] = [];
-  const tree = parseTree(text, errors, { allowTrailingComma: true, allowEmptyContent: false });
-  if (errors.length > 0 || tree === undefined) {
-    const { error, offset } = errors[0] ?? { error: 0, offset: 0 };
-    const where = text.slice(offset, offset + 20).split("\n")[0];
-    throw new InputError([{
-      place: `${fileName}:${text.slice(0, offset).split("\n").length}`,
-      message: cannot("read sweep", `the file must be JSON (${printParseErrorCode(error)})`, where),
-    }]);
-  }
-  const repeated = repeatedKeys(tree, "");
-  if (repeated.length > 0) throw new InputError(repeated);
-  const checked = sweep.safeParse(getNodeValue(tree), { reportInput: true });
-  const problems = checked.success
-    ? crossChecks(checked.data as Sweep)
-    : checked.error.issues.flatMap(toProblems);
+  const { data, repeated } = readJsonText(text, fileName, "read sweep");
+  const checked = sweep.safeParse(data, { reportInput: true });
+  const problems = [
+    ...repeated,
+    ...(checked.success ? crossChecks(checked.data as Sweep) : checked.error.issues.flatMap(toProblems)),
+  ];
   if (problems.length > 0) throw new InputError(problems);
   return checked.data as Sweep;
 }
@@ -196,26 +185,6 @@ function crossChecks(data: Sweep): Problem[] {
   const count = data.axes.reduce((product, axis) => product * axisCount(axis), 1);
   if (count > MOST_POINTS) say("/axes", `there must be at most ${MOST_POINTS} points`, count);
   return problems;
-}
-
-type Node = NonNullable<ReturnType<typeof parseTree>>;
-
-/** A key given twice would silently lose one of its values. */
-function repeatedKeys(node: Node, pointer: string): Problem[] {
-  const seen = new Set<string>();
-  return (node.children ?? []).flatMap((child, i) => {
-    if (child.type !== "property") return repeatedKeys(child, `${pointer}/${i}`);
-    const [key, value] = child.children ?? [];
-    const place = `${pointer}/${key.value}`;
-    const again = seen.has(key.value);
-    seen.add(key.value);
-    return [
-      ...(again
-        ? [{ place, message: cannot("read sweep", "each key may be given once", String(key.value)) }]
-        : []),
-      ...(value ? repeatedKeys(value, place) : []),
-    ];
-  });
 }
 
 function toProblems(issue: z.core.$ZodIssue): Problem[] {
