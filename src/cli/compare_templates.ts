@@ -181,6 +181,7 @@ function templateOf(
     cutoffEv: resolved.workFunctionEv + resolved.kineticEnergyShiftEv,
     fermiEdgeEv: fermiEdgeEv(resolved),
     resolutionFwhmEv: resolved.resolutionFwhmEv,
+    isSlow: engine.kind === "pair",
   };
 }
 

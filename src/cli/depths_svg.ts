@@ -1,3 +1,4 @@
+import type { ExpectedSpectrum } from "../model/mod.ts";
 import { depthFigure, renderSvg } from "../report/mod.ts";
 import type { Simulation } from "./simulate.ts";
 
@@ -15,17 +16,15 @@ const DEPTHS_SHOWN = 1.5;
  * @returns Text of an SVG file, or null when no core level gives electrons.
  */
 export async function depthsSvg({ resolved, expected }: Simulation): Promise<string | null> {
-  const levels = expected.levels.filter(({ noLossPerPhoton }) => noLossPerPhoton > 0)
-    .toSorted((a, b) => b.noLossPerPhoton - a.noLossPerPhoton);
-  if (levels.length === 0) return null;
-  const [strongest] = levels;
-  const shown = levels.slice(0, MOST_LEVELS);
+  const { shown, note } = strongestLevels(expected);
+  if (shown.length === 0) return null;
+  const [strongest] = shown;
   const endNm = DEPTHS_SHOWN * Math.max(...shown.map(({ informationDepth95Nm }) => informationDepth95Nm));
   return await renderSvg(depthFigure({
     title: resolved.title,
     subtitle: [
       "simulated: depths that electrons without an energy loss come from",
-      ...(levels.length > MOST_LEVELS ? [`the ${MOST_LEVELS} strongest of ${levels.length} lines`] : []),
+      ...note,
     ],
     curves: shown.map(({ name, emissionDepth }) => {
       const { depthsNm, densityPerNm } = emissionDepth;
@@ -42,6 +41,29 @@ export async function depthsSvg({ resolved, expected }: Simulation): Promise<str
       { label: `information depth (95 %) of ${strongest.name}`, depthNm: strongest.informationDepth95Nm },
     ],
   }));
+}
+
+/**
+ * The levels that a figure has room for, strongest first, and a line that says so where some are left out.
+ *
+ * @param expected The spectrum.
+ * @returns Levels that give electrons.
+ */
+export function strongestLevels({ levels }: ExpectedSpectrum): {
+  readonly shown: ExpectedSpectrum["levels"];
+  readonly note: readonly string[];
+} {
+  // Two layers of one material have levels of one name; the deeper one gets a number.
+  const named = levels.map((level, i) => {
+    const above = levels.slice(0, i).filter(({ name }) => name === level.name).length;
+    return above === 0 ? level : { ...level, name: `${level.name} (${above + 1})` };
+  });
+  const strong = named.filter(({ noLossPerPhoton }) => noLossPerPhoton > 0)
+    .toSorted((a, b) => b.noLossPerPhoton - a.noLossPerPhoton);
+  return {
+    shown: strong.slice(0, MOST_LEVELS),
+    note: strong.length > MOST_LEVELS ? [`the ${MOST_LEVELS} strongest of ${strong.length} lines`] : [],
+  };
 }
 
 function mean(values: readonly number[]): number {

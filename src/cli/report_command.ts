@@ -9,6 +9,7 @@ type ReportFlags = { png: boolean; spec: boolean };
 const FIGURE_TITLES: Readonly<Record<string, string>> = {
   "depths.svg": "Depths that electrons come from (depths.svg)",
   "fit.svg": "Spectrum and both fitted edges (fit.svg)",
+  "losses.svg": "What the electrons went through (losses.svg)",
   "spectrum.svg": "Spectrum as simulated (spectrum.svg)",
 };
 

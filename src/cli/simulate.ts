@@ -286,6 +286,7 @@ export function spectrumFileText(resolved: ResolvedScenario, hash: string, spect
     ["temperature_k", String(resolved.temperatureK)],
     ["resolution_fwhm_ev", String(resolved.resolutionFwhmEv)],
     ["dwell_s", String(resolved.acquisition.dwellS)],
+    ["dead_time_s", String(resolved.acquisition.deadTimeS)],
     ["sweeps", String(resolved.acquisition.sweeps)],
     ["seed", String(resolved.seed)],
     ["histories", String(spectrum.histories)],

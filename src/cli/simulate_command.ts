@@ -15,6 +15,7 @@ import {
   text,
   workersFlag,
 } from "./flags.ts";
+import { lossesSvg } from "./losses_svg.ts";
 import { progressLine } from "./progress.ts";
 import {
   loadScenario,
@@ -42,11 +43,11 @@ type SimulateFlags = {
 /** `simulate` */
 export const simulateCommand = buildCommand({
   docs: {
-    brief: "Simulate the spectrum of a scenario: spectrum.csv, result.json, spectrum.svg",
+    brief: "Simulate the spectrum of a scenario: spectrum.csv, result.json, spectrum.svg, losses.svg",
     fullDescription: [
-      "Simulate the spectrum of a scenario and write spectrum.csv, result.json and spectrum.svg; where core levels give lines,",
-      "also depths.svg, the depths that their electrons come from. Ctrl-C stops early, writes",
-      "what is done so far (result.json then says complete: false) and ends with exit code 1.",
+      "Simulate the spectrum of a scenario and write spectrum.csv, result.json, spectrum.svg and losses.svg, what the",
+      "electrons went through; where core levels give lines, also depths.svg, the depths that their electrons come from.",
+      "Ctrl-C stops early, writes what is done so far (result.json then says complete: false) and ends with exit code 1.",
       "",
       "--until 0.5% follows photons until the relative standard error of the worst channel is below that, among channels",
       "with more than a tenth of the highest counts; --histories is then the most that may be followed.",
@@ -219,11 +220,13 @@ export async function runScenario(
 
 /** Writes what a simulation gives. */
 export async function writeSimulation(simulation: Simulation, folder: string): Promise<string[]> {
+  const losses = await lossesSvg(simulation);
   const depths = await depthsSvg(simulation);
   return await writeFiles(folder, [
     ["spectrum.csv", spectrumCsv(simulation)],
     ["result.json", `${JSON.stringify(simulation.result, null, 2)}\n`],
     ["spectrum.svg", await spectrumSvg(simulation)],
+    ...(losses === null ? [] : [["losses.svg", losses] as const]),
     ...(depths === null ? [] : [["depths.svg", depths] as const]),
   ]);
 }

@@ -46,11 +46,11 @@ export interface SuspectReport {
 }
 
 /** Names of the suspects that are no parameters of the scenario. */
-export const GAIN_SUSPECT = "gain of the energy scale";
-export const BACKGROUND_SUSPECT = "constant background";
+const GAIN_SUSPECT = "gain of the energy scale";
+const BACKGROUND_SUSPECT = "constant background";
 
 /** Chance of naming a suspect where there is none, all suspects together (chosen). */
-export const FAMILY_FALSE_ALARM = 0.01;
+const FAMILY_FALSE_ALARM = 0.01;
 /** Criteria closer than this to the best have considerable support: Burnham & Anderson (2002), p. 70. */
 const SUPPORTED = 2;
 /** Misfit with a smaller chance than this needs an explanation. */

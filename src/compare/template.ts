@@ -21,6 +21,8 @@ export interface Template {
   readonly fermiEdgeEv: number;
   /** Resolution, full width at half maximum, eV. */
   readonly resolutionFwhmEv: number;
+  /** `true` where the scattered part has no lines of its own: a ratio of two such spectra varies slowly with energy. */
+  readonly isSlow: boolean;
 }
 
 /** A template simulated at another value of one parameter. */
@@ -67,6 +69,8 @@ const POLYNOMIALS = 13;
 const SIGNIFICANT = 3;
 /** Functions are about the cutoff where it may change its shape by itself (patches, spread of the work function), eV. */
 const CUTOFF_REACH_EV = 0.6;
+/** Standard deviation and distance of those Gaussians, in widths of the resolution: a little narrower than its Gaussian. */
+const BUMP_FWHM = 0.4;
 /** A function of which less than this is left after those before it says nothing new. */
 const INDEPENDENT = 1e-3;
 /** Noise of a change, as a share of the counting variance, that is taken as it is. */
@@ -83,7 +87,7 @@ const SMALL_NOISE = 0.05;
  * Where a parameter changes the histories, common random numbers keep little of their promise: after the first different
  * event two histories are strangers. Then the ratio of scattered counts of the pair (node, base), which varies slowly with
  * energy, is taken as a sum of polynomials, and what is left about the cutoff as a sum of Gaussians as narrow as the
- * resolution; of both only those are kept that are larger than three standard errors (from the scatter of the groups).
+ * resolution (neither under X-rays, where lines change by themselves); of both only those are kept that are larger than three standard errors (from the scatter of the groups).
  * Hard thresholding: D. Donoho, I. Johnstone, Biometrika 81, 425 (1994). The direct part has no noise and is taken as it is.
  *
  * @param parameter Name, unit, value of the base and the range of a fit.
@@ -194,18 +198,22 @@ function changeOfScattered(
   const plain = { mean: raw(pair), groups: pairs.map(raw) };
   const errors = standardErrors(plain.groups, plain.mean);
   const noise = errors.reduce((sum, error, i) => sum + error ** 2 / Math.max(1, base.counts[i]), 0);
-  if (noise <= SMALL_NOISE * errors.length) return plain;
+  if (!base.isSlow || noise <= SMALL_NOISE * errors.length) return plain;
 
   const slow = { mean: ratioOf(pair), groups: pairs.map(ratioOf) };
-  const ratio = significantPart(
-    slow,
-    polynomials(base.counts.length),
-    standardErrors(slow.groups, slow.mean).map((error, i) => (pair.below[i] > least ? error : 0)),
-  );
+  // At the foot of the cutoff a ratio says nothing; that of the first channels above it goes on there.
+  const first = Math.ceil((base.cutoffEv + CUTOFF_REACH_EV / 2 - base.startEv) / base.stepEv);
+  const usable = standardErrors(slow.groups, slow.mean)
+    .map((error, i) => (i >= first && pair.below[i] > least ? error : 0));
+  const ratio = significantPart(slow, polynomials(base.counts.length), usable);
+  for (const part of [ratio.mean, ...ratio.groups]) part.fill(part[first] ?? 0, 0, Math.max(0, first));
   const rest = (of: typeof pair, part: Float64Array): Float64Array =>
     of.above.map((value, i) => value - of.below[i] * (1 + part[i]));
   const fast = { mean: rest(pair, ratio.mean), groups: pairs.map((of, g) => rest(of, ratio.groups[g])) };
-  const atCutoff = significantPart(fast, bumps(base), standardErrors(fast.groups, fast.mean));
+  // Channels that nothing reaches by chance have no error; they must not rule the sum.
+  const floored = standardErrors(fast.groups, fast.mean)
+    .map((error, i) => Math.hypot(error, Math.sqrt(SMALL_NOISE * Math.max(1, base.counts[i]))));
+  const atCutoff = significantPart(fast, bumps(base), floored);
   const sum = (slowPart: Float64Array, fastPart: Float64Array): Float64Array =>
     slowPart.map((value, i) => value * scattered[i] + fastPart[i]);
   return {
@@ -279,7 +287,7 @@ function* polynomials(channels: number): Generator<Float64Array> {
 
 /** Gaussians side by side about the cutoff, as narrow as the resolution. */
 function* bumps({ counts, startEv, stepEv, cutoffEv, resolutionFwhmEv }: Template): Generator<Float64Array> {
-  const distanceEv = 0.5 * resolutionFwhmEv;
+  const distanceEv = BUMP_FWHM * resolutionFwhmEv;
   for (let centerEv = -CUTOFF_REACH_EV; centerEv <= CUTOFF_REACH_EV; centerEv += distanceEv) {
     yield counts.map((_, i) =>
       Math.exp(-0.5 * ((startEv + i * stepEv - cutoffEv - centerEv) / distanceEv) ** 2)

@@ -14,6 +14,8 @@ export interface ExpectedSpectrum {
   readonly counts: Float64Array;
   /** Standard error of `counts` from the finite number of histories. */
   readonly standardErrors: Float64Array;
+  /** Part of `counts` that photoelectrons without any event on their way make; known without histories. */
+  readonly directCounts: Float64Array;
   /** Expected counts from the analogue tally of the same histories. */
   readonly analogueCounts: Float64Array;
   /** Standard error of `analogueCounts`. */
@@ -73,12 +75,18 @@ export function expectedSpectrum(
     );
   const expected = toCounts((c) => response.direct[c] + forced.mean[c], forced.error);
   const counted = toCounts((c) => analogue.mean[c], analogue.error);
+  const { darkRateCountsPerS } = acquisition;
+  const directCounts = expected.counts.map((counts, c) => {
+    const all = ratePerDensity[c] * (response.direct[c] + forced.mean[c]) + darkRateCountsPerS;
+    return all > 0 ? (counts * ratePerDensity[c] * response.direct[c]) / all : 0;
+  });
   const scattered = groupStatistics(tally, 1, (group) => response.totalOf(group.forced));
   const seen = groupStatistics(tally, 1, (group) => response.totalOf(group.analogue));
   return {
     kineticEnergiesEv,
     counts: expected.counts,
     standardErrors: expected.standardErrors,
+    directCounts,
     analogueCounts: counted.counts,
     analogueStandardErrors: counted.standardErrors,
     electronsPerPhoton: response.directTotal + scattered.mean[0],

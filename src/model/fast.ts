@@ -12,6 +12,11 @@ export interface ExpectedLevel {
   readonly kineticEnergyEv: number;
   /** Electrons per incident photon without an energy loss. */
   readonly noLossPerPhoton: number;
+  /**
+   * Electrons after 0, 1, 2, ... losses that add up to no more than the largest loss followed, relative to those without
+   * (partial intensities; W. Werner, Surf. Interface Anal. 31, 141 (2001), from memory); empty when there are none.
+   */
+  readonly partialIntensities: readonly number[];
   /** Mean depth that they come from, nm (mean escape depth, ISO 18115-1). */
   readonly meanEscapeDepthNm: number;
   /** Depth above which 95 % of them start, nm (information depth, ISO 18115-1). */
@@ -20,6 +25,8 @@ export interface ExpectedLevel {
   readonly emissionDepth: { readonly depthsNm: readonly number[]; readonly densityPerNm: readonly number[] };
 }
 
+/** Losses of one electron up to which partial intensities are given. */
+const MOST_LOSSES = 10;
 /** The line profile is tabulated with this many points per loss step. */
 const POINTS_PER_STEP = 2;
 /** Lines are followed this far beyond the source's own lines, eV: the Lorentzian tail there is below 1e-4 of the peak. */
@@ -141,8 +148,12 @@ export function expectedLevels(
     const { byDepth, electrons, depthCellNm } = engine.direct[s];
     const depths = byDepth.slice();
     let noLoss = electrons;
+    const byLosses = new Float64Array(MOST_LOSSES + 1);
     for (const group of tally.groups) {
       noLoss += group.forced[s * stride] / tally.histories;
+      for (let n = 1; n < byLosses.length; n++) {
+        byLosses[n] += group.events[s * stride + n] / tally.histories;
+      }
       for (let d = 0; d < depthCells; d++) {
         depths[d] += group.forced[s * stride + depthFrom + d] / tally.histories;
       }
@@ -157,6 +168,7 @@ export function expectedLevels(
       name: level.name,
       kineticEnergyEv: fast.photonEnergyEv - level.bindingEnergyEv + resolved.kineticEnergyShiftEv,
       noLossPerPhoton: noLoss,
+      partialIntensities: noLoss > 0 ? Array.from(byLosses, (value, n) => n === 0 ? 1 : value / noLoss) : [],
       meanEscapeDepthNm: depths.reduce((sum, value, i) => sum + value * depthsNm[i], 0) / total,
       informationDepth95Nm: layerTops[level.layer] + (d + inside) * depthCellNm,
       emissionDepth: { depthsNm, densityPerNm: Array.from(depths, (value) => value / total / depthCellNm) },

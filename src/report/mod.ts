@@ -40,6 +40,11 @@ export {
 } from "./page.ts";
 export { svgToPng } from "./png.ts";
 export { type Displayed, type DisplayEdge, type DisplayFit, displayFit, displaySpectrum } from "./display.ts";
+export {
+  type FigurePartialIntensities,
+  partialIntensitiesFigure,
+  type PartialIntensitiesFigureInput,
+} from "./partial_intensities_figure.ts";
 export { planFigure, type PlanFigureInput } from "./plan_figure.ts";
 export {
   type RunSheet,

@@ -108,6 +108,9 @@ function fitted(
     analyzerWorkFunctionEv: resolved.analyzerWorkFunctionEv,
     acceptanceHalfAngleDeg: resolved.acceptanceHalfAngleDeg,
     temperatureK: resolved.temperatureK,
+    resolutionFwhmEv: resolved.resolutionFwhmEv,
+    deadTimeS: resolved.acquisition.deadTimeS > 0 ? resolved.acquisition.deadTimeS : null,
+    countingTimeS: resolved.acquisition.dwellS * resolved.acquisition.sweeps,
   }], { knownLine: nearestLine });
   const estimates = FITTED_QUANTITIES.flatMap((quantity) => {
     const name = `fit.${quantity}` as const;

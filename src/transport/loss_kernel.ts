@@ -169,8 +169,8 @@ export function directLines(medium: LossMedium): DirectLine[] {
  * isotropic after the transport mean free path. Before each flight the electron is scored with a direction drawn inside
  * the acceptance and the probability of getting out without an elastic event; the losses on that way are drawn from
  * Poisson's law, the share without any is scored as an expectation. The first flight's share without losses is left to
- * {@link directLines}. The number of losses goes into `events`, which so holds the partial intensities, the depth of
- * origin of no-loss electrons behind the loss bins. Electrons start exponentially in depth and carry the weight that
+ * {@link directLines}. The number of losses goes into `events`, which so holds the partial intensities within the
+ * losses that are followed, the depth of origin of no-loss electrons behind the loss bins. Electrons start exponentially in depth and carry the weight that
  * makes their density uniform. Struck electrons are not followed; mean free paths are those at the start of a flight.
  *
  * Source: partial intensities and straight-line losses, W. Werner, Surf. Interface Anal. 31, 141 (2001) (from memory).
@@ -282,8 +282,10 @@ export function lossHistoryRunner(medium: LossMedium): Histories {
           const more = poissonAbove(mean, none, none + generator.nextUniform() * (1 - none));
           const sum = lossEv + drawLosses(more, 0, inelastic, row, generator);
           const bin = 1 + ((sum / stepEv) | 0);
-          if (bin < lossBins) forced[base + bin] += score * (1 - none);
-          if (losses + more < lossBins) events[base + losses + more] += score * (1 - none);
+          if (bin < lossBins) {
+            forced[base + bin] += score * (1 - none);
+            if (losses + more < lossBins) events[base + losses + more] += score * (1 - none);
+          }
         }
         const first = !turned;
         turned = true;

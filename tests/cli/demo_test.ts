@@ -17,7 +17,7 @@ Deno.test("demo prints the work function found beside the one put in, and writes
     const agrees = (truth: number): boolean => Math.abs(found - truth) <= 4.1 * uncertainty;
     assert.ok(agrees(putIn), `${found} +- ${uncertainty}`);
     assert.ok(!agrees(putIn + 0.05) && !agrees(putIn - 0.05), "a work function 50 meV off must be refused");
-    const names = ["fit.json", "fit.svg", "result.json", "spectrum.csv", "spectrum.svg"];
+    const names = ["fit.json", "fit.svg", "losses.svg", "result.json", "spectrum.csv", "spectrum.svg"];
     assert.deepEqual(namesIn(`${folder}/out/demo`), names);
     for (const name of names) assert.ok(stdout.includes(`out/demo/${name}`), name);
     const svg = Deno.readTextFileSync(`${folder}/out/demo/fit.svg`);

@@ -147,6 +147,7 @@ function constant(mean: number, channels: number): ExpectedSpectrum {
     kineticEnergiesEv: counts,
     counts,
     standardErrors: counts,
+    directCounts: counts,
     analogueCounts: counts,
     analogueStandardErrors: counts,
     electronsPerPhoton: 0,

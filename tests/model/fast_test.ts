@@ -3,10 +3,12 @@ import { engineData, expectedSpectrum } from "../../src/model/mod.ts";
 import { runSeries } from "../../src/run/mod.ts";
 import { parseScenario, resolveScenario } from "../../src/scenario/mod.ts";
 import { assertClose } from "../support/assert_close.ts";
+import { assertMean } from "../support/assert_mean.ts";
 
 const TEXT = await Deno.readTextFile(
   new URL("../../scenarios/gold_under_aluminum_al_kalpha.json", import.meta.url),
 );
+const GOLD = await Deno.readTextFile(new URL("../../scenarios/clean_gold_he1.json", import.meta.url));
 
 function spectrum(...overrides: string[]) {
   const resolved = resolveScenario(parseScenario(TEXT, "x-ray", overrides));
@@ -55,6 +57,59 @@ Deno.test("an overlayer weakens the substrate's line by exp(-d/(lambda cos theta
   const row = covered.resolved.fast!.layers[0].inelasticMeanFreePathNm[350];
   assert.ok(row > 3 && row < 3.15, `${row} nm`);
   assertClose(noLoss(covered) / noLoss(bare), Math.exp(-1 / row), { relative: 3e-3 });
+});
+
+Deno.test("partial intensities along straight lines are the shares of n losses that end within what is followed", () => {
+  // No deflection: C_n = C_0 (W. Werner, Surf. Interface Anal. 31, 141 (2001), from memory), so what is left of C_n within
+  // the largest loss L is the distribution function of the sum of n losses, here the convolution of their distribution.
+  const { resolved, engine } = spectrum("sample.transportMeanFreePathNm=null", "sample.layers=[]");
+  const fast = resolved.fast!;
+  const [{ losses }] = fast.layers;
+  const bins = Math.round(fast.maxLossEv / fast.stepEv);
+  const sums = [1, 2].map((n) => {
+    let share = 0;
+    for (let a = 0; a < bins; a++) {
+      if (n === 1) share += losses[a];
+      // Two uniform places in their bins lie below the edge of the sum with probability 1, 1/2 or 0.
+      else for (let b = 0; a + b < bins; b++) share += losses[a] * losses[b] * (a + b === bins - 1 ? 0.5 : 1);
+    }
+    return share;
+  });
+  const level = fast.levels.findIndex(({ name }) => name === "Au 4f7/2");
+  const runs = Array.from(
+    { length: 16 },
+    (_, seed) =>
+      expectedSpectrum(resolved, engine, runSeries(engine, seed, 8)).levels[level].partialIntensities,
+  );
+  assert.ok(sums[0] < 0.95 && sums[1] < 0.8, `${sums}: the limit must be felt`);
+  [1, ...sums].forEach((expected, n) => {
+    const mean = runs.reduce((sum, run) => sum + run[n], 0) / runs.length;
+    if (n === 0) return assert.equal(mean, 1);
+    const scatter = runs.reduce((sum, run) => sum + (run[n] - mean) ** 2, 0);
+    const error = Math.sqrt(scatter / runs.length / (runs.length - 1));
+    // One false alarm in 2400 each (Student's t of 15 degrees of freedom).
+    assertMean(mean, error, expected, `${n} losses`);
+    assert.throws(() => assertMean(mean, error, 1), `${n} losses, without the limit`);
+  });
+});
+
+Deno.test("directCounts of gold hold the highest energies and next to nothing of the cutoff", () => {
+  // Just below the Fermi edge every inelastic event leads out of the window; at the cutoff cascades make nearly all.
+  const gold = resolveScenario(parseScenario(GOLD, "gold", ["light.satellites=false"]));
+  const engine = engineData(gold);
+  const { counts, directCounts, kineticEnergiesEv } = expectedSpectrum(
+    gold,
+    engine,
+    runSeries(engine, 1, 64),
+  );
+  const shareAt = (energyEv: number): number => {
+    const c = kineticEnergiesEv.findIndex((channel) => channel >= energyEv);
+    return directCounts[c] / counts[c];
+  };
+  const edgeEv = gold.photonEnergyEv + gold.kineticEnergyShiftEv;
+  assert.ok(shareAt(edgeEv - 0.1) > 0.95, `${shareAt(edgeEv - 0.1)}`);
+  assert.ok(shareAt(gold.workFunctionEv + gold.kineticEnergyShiftEv + 0.3) < 0.2);
+  directCounts.forEach((direct, c) => assert.ok(direct >= 0 && direct <= counts[c] * (1 + 1e-12)));
 });
 
 Deno.test("a window without a core level is an error, formulas outside their range a warning that names them", () => {

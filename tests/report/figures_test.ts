@@ -10,6 +10,8 @@ import {
   type LevelsFigureInput,
   lossFigure,
   type LossFigureInput,
+  partialIntensitiesFigure,
+  type PartialIntensitiesFigureInput,
   renderSvg,
 } from "../../src/report/mod.ts";
 import { rowsWith, textsOf } from "../support/drawing.ts";
@@ -60,6 +62,12 @@ const LOSS: LossFigureInput = {
   axisTitle: "Kinetic energy / eV",
   energiesEv: [1, 2, 3],
   parts: [{ label: "no event", counts: [1, 2, 3] }, { label: "1 or more", counts: [5, 2, 0] }],
+};
+
+const PARTIAL: PartialIntensitiesFigureInput = {
+  title: "Gold",
+  subtitle: [],
+  lines: [{ label: "Au 4f7/2", intensities: [1, 0.9, 0.8] }, { label: "Al 2s", intensities: [1, 1.1, 1.2] }],
 };
 
 /** Energies of the lines in the column of the analyzer, eV, ascending. */
@@ -135,6 +143,13 @@ const FIGURES: readonly (readonly [string, Record<string, unknown>, readonly str
     "all",
     "Counts",
     "Kinetic energy / eV",
+  ]],
+  ["partialIntensitiesFigure() of two lines", partialIntensitiesFigure(PARTIAL), [
+    "Number of energy losses",
+    "Electrons relative to those without",
+    "Au 4f7/2",
+    "Al 2s",
+    "2",
   ]],
 ];
 for (const [what, figure, words] of FIGURES) {
@@ -240,6 +255,16 @@ const REFUSED: readonly (readonly [string, () => unknown, RegExp])[] = [
     "a part is too short",
     () => lossFigure({ ...LOSS, parts: [{ label: "no event", counts: [1, 2] }] }),
     /^Cannot draw losses as no event must have as many heights as places/,
+  ],
+  [
+    "there are more lines than colors",
+    () => partialIntensitiesFigure({ ...PARTIAL, lines: Array(7).fill(PARTIAL.lines[0]) }),
+    /^Cannot draw partial intensities as there must be 1\.\.6 lines: current value is 7$/,
+  ],
+  [
+    "an intensity is not finite",
+    () => partialIntensitiesFigure({ ...PARTIAL, lines: [{ label: "Au 4f7/2", intensities: [1, NaN] }] }),
+    /^Cannot draw partial intensities as Au 4f7\/2 must be finite: current value is NaN$/,
   ],
 ];
 for (const [what, call, message] of REFUSED) {
