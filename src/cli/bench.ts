@@ -55,8 +55,6 @@ async function seconds(task: () => unknown): Promise<number> {
 
 async function medianSeconds(task: () => unknown): Promise<number> {
   const times: number[] = [];
-  // One after the other, or they would share the processors.
-  // deno-lint-ignore no-await-in-loop
   for (let i = 0; i < REPEATS; i++) times.push(await seconds(task));
   return median(times);
 }

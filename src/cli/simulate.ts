@@ -136,7 +136,7 @@ export function scenarioLoader(
   };
   return async (overrides) => {
     const scenario = parseScenario(text, path, overrides);
-    const { densityOfStatesFile, materialFile, meanFreePathFile } = scenario.sample;
+    const { densityOfStatesFile, lossFile, materialFile, meanFreePathFile } = scenario.sample;
     const named: UserTables = {
       ...(materialFile !== null && {
         material: materialFrom(await readTable(beside(path, materialFile)), beside(path, materialFile)),
@@ -144,6 +144,7 @@ export function scenarioLoader(
       ...(densityOfStatesFile !== null && {
         densityOfStates: await table(densityOfStatesFile, "states_per_ev"),
       }),
+      ...(lossFile !== null && { loss: await table(lossFile, "losses_per_ev") }),
       ...(meanFreePathFile !== null && { meanFreePath: await table(meanFreePathFile, "length_nm") }),
       ...(scenario.light.kind === "table" && { light: await table(scenario.light.file, "photons_per_ev") }),
     };

@@ -3,6 +3,7 @@ import type { ResolvedFast, ResolvedScenario } from "../scenario/mod.ts";
 import { type LossLayout, lossLayout, type Tally } from "../transport/mod.ts";
 import type { FastEngineData } from "./engine.ts";
 import type { EngineResponse } from "./response.ts";
+import { surfaceLosses } from "./surface_losses.ts";
 
 /** What of a core level reaches the analyzer and from how deep. */
 export interface ExpectedLevel {
@@ -123,7 +124,15 @@ function levelProfile(
   });
   // Within the reach every line is given unit area: the tail of an asymmetric line has no area of its own.
   const area = values.reduce((sum, value) => sum + value, 0) * spacingEv;
-  return { startEv, values: values.map((value) => value / area) };
+  const steps = Math.ceil(fast.maxLossEv / fast.stepEv);
+  const losses = surfaceLosses(level.surfaceExcitations, fast.layers[0].losses, steps);
+  const lost = new Float64Array(count);
+  losses.forEach((share, j) => {
+    if (share === 0) return;
+    const down = j === 0 ? 0 : Math.round((j - 0.5) * POINTS_PER_STEP);
+    for (let i = 0; i + down < count; i++) lost[i] += (share * values[i + down]) / area;
+  });
+  return { startEv, values: lost };
 }
 
 /**
@@ -167,7 +176,7 @@ export function expectedLevels(
     return {
       name: level.name,
       kineticEnergyEv: fast.photonEnergyEv - level.bindingEnergyEv + resolved.kineticEnergyShiftEv,
-      noLossPerPhoton: noLoss,
+      noLossPerPhoton: noLoss * Math.exp(-level.surfaceExcitations),
       partialIntensities: noLoss > 0 ? Array.from(byLosses, (value, n) => n === 0 ? 1 : value / noLoss) : [],
       meanEscapeDepthNm: depths.reduce((sum, value, i) => sum + value * depthsNm[i], 0) / total,
       informationDepth95Nm: layerTops[level.layer] + (d + inside) * depthCellNm,

@@ -8,6 +8,7 @@ import {
   type MeanFreePathLaw,
   meanFreePathLaw,
   meanFreePathNotices,
+  surfaceExcitationParameter,
 } from "../losses/mod.ts";
 import { fastLight } from "./light.ts";
 import type { UserTables } from "./resolve.ts";
@@ -27,6 +28,8 @@ export interface ResolvedLevel {
   readonly asymmetry: number;
   /** Electrons per photon and nanometer of depth, 1/nm. */
   readonly perNm: number;
+  /** Mean number of surface excitations on the way out. */
+  readonly surfaceExcitations: number;
   /** Angular weight of emission toward the analyzer. */
   readonly directWeight: number;
 }
@@ -135,6 +138,11 @@ export function resolveFast(
         lorentzFwhmEv: level.lorentzFwhmEv.value,
         asymmetry: level.asymmetry.value,
         perNm: (perNm3 * crossSection) / Math.cos((geometry.incidenceAngleDeg * Math.PI) / 180),
+        surfaceExcitations: sample.surfaceExcitationFactor === null ? 0 : surfaceExcitationParameter(
+          energyEv,
+          geometry.emissionAngleDeg,
+          sample.surfaceExcitationFactor,
+        ),
         directWeight: Math.max(0, 1 + 0.25 * level.beta.value * (3 * Math.cos(angle) ** 2 - 1)),
       }];
     });
@@ -171,7 +179,7 @@ export function resolveFast(
         ? sample.transportMeanFreePathNm
         : sample.layers[l].transportMeanFreePathNm,
       losses: Array.from(
-        lossDistribution(lossModel(chosen), {
+        lossDistribution(lossModel(chosen, isSubstrate ? tables : {}), {
           primaryEnergyEv: highest,
           maxLossEv: Math.min(highest, FULL_LOSS_EV),
           stepEv,
@@ -217,7 +225,8 @@ function lawOf(chosen: Material, scenario: Scenario, tables: UserTables): MeanFr
   });
 }
 
-function lossModel({ loss }: Material): LossModel {
+function lossModel({ loss }: Material, tables: UserTables): LossModel {
+  if (tables.loss) return { kind: "table", lossesEv: tables.loss.energiesEv, densities: tables.loss.values };
   if (loss.kind === "tougaard") {
     return {
       kind: "tougaard",

@@ -49,6 +49,8 @@ const sample = z.strictObject({
   }).nullable().default(null),
   charging: charging.default(() => charging.parse({})),
   fastMeanFreePath: z.enum(["TPP-2M", "Seah-Dench"]).default("TPP-2M"),
+  lossFile: z.string().min(1).nullable().default(null),
+  surfaceExcitationFactor: z.number().min(0.05).max(20).nullable().default(null),
 });
 
 const common = {

@@ -24,6 +24,8 @@ export interface UserTables {
   readonly meanFreePath?: UserTable;
   /** For `sample.materialFile`. */
   readonly material?: Material;
+  /** For `sample.lossFile`: losses, eV, and their density. */
+  readonly loss?: UserTable;
   /** For `light.file`: photon energies, eV, and photons per eV. */
   readonly light?: UserTable;
 }
@@ -329,6 +331,7 @@ const LIGHT_PLACES: Readonly<Record<Scenario["light"]["kind"], string>> = {
 
 const USER_FILES = [
   ["materialFile", "material"],
+  ["lossFile", "loss"],
   ["densityOfStatesFile", "densityOfStates"],
   ["meanFreePathFile", "meanFreePath"],
 ] as const;

@@ -95,6 +95,16 @@ export interface SampleSettings {
    * it in the substrate. Default: `TPP-2M`.
    */
   readonly fastMeanFreePath: "TPP-2M" | "Seah-Dench";
+  /**
+   * CSV file with columns `energy_ev,losses_per_ev`, beside the scenario: energy losses of fast electrons in the substrate,
+   * any constant factor. Default: null.
+   */
+  readonly lossFile: string | null;
+  /**
+   * Material factor a_H of the surface excitations that fast electrons make on their way out, 0.05..20, 1 for a
+   * free-electron metal; null leaves them out. Default: null.
+   */
+  readonly surfaceExcitationFactor: number | null;
 }
 
 /** What every source has. */

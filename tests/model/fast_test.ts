@@ -126,3 +126,23 @@ Deno.test("a window without a core level is an error, formulas outside their ran
   );
   assert.match(resolved.warnings.map(({ message }) => message).join("\n"), /TPP-2M/);
 });
+
+Deno.test("surface excitations take exp(-P) of the line and put it below, nothing lost", () => {
+  const without = spectrum("sample.layers=[]", "acquisition.startEv=1300", "acquisition.stepEv=0.2");
+  const withThem = spectrum(
+    "sample.layers=[]",
+    "acquisition.startEv=1300",
+    "acquisition.stepEv=0.2",
+    "sample.surfaceExcitationFactor=1",
+  );
+  const mean = withThem.resolved.fast!.levels[0].surfaceExcitations;
+  // 1/(1 + 0.173 sqrt(E)), a free-electron metal at normal emission (form from memory, see the formula).
+  assertClose(mean, 1 / (1 + 0.1727 * Math.sqrt(1486.7 - 83.96)), { relative: 2e-3 });
+  const line = ({ expected }: typeof without) => expected.levels[0].noLossPerPhoton;
+  assertClose(line(withThem) / line(without), Math.exp(-mean), { relative: 1e-9 });
+  const height = ({ expected }: typeof without) => Math.max(...expected.counts);
+  assert.ok(height(withThem) < 0.9 * height(without));
+  const all = ({ expected }: typeof without) => expected.counts.reduce((sum, value) => sum + value, 0);
+  // Of a loss of 20 eV or more little leaves the window of 98 eV below the line.
+  assertClose(all(withThem), all(without), { relative: 0.03 });
+});

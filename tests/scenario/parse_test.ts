@@ -43,6 +43,8 @@ Deno.test("parseScenario() fills in the defaults", () => {
     bandBending: null,
     charging: { shiftEv: 0, fwhmEv: 0 },
     fastMeanFreePath: "TPP-2M",
+    lossFile: null,
+    surfaceExcitationFactor: null,
   });
   assert.deepEqual(scenario.light, {
     kind: "lamp",
