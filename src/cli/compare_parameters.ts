@@ -1,5 +1,4 @@
 import { cannot, InputError } from "../base/mod.ts";
-import { MATERIAL_IDS } from "../data/mod.ts";
 import type { LoadedScenario } from "./simulate.ts";
 
 /** A parameter of a scenario that templates are simulated for. */
@@ -89,7 +88,7 @@ export function suspectParameters(loaded: LoadedScenario): ScenarioParameter[] {
     plain("sample.workFunctionEv", w, [w - 0.3, w + 0.3], [w - 0.3, w + 0.3]),
     ...(t < 20
       ? [plain("sample.temperatureK", t, [0, 300], [100, 200, 300])]
-      : [plain("sample.temperatureK", t, [0.5 * t, 1.8 * t], [0.5 * t, 1.4 * t, 1.8 * t])]),
+      : [plain("sample.temperatureK", t, [0.2 * t, 1.8 * t], [0.2 * t, 0.5 * t, 1.4 * t, 1.8 * t])]),
     {
       ...plain(
         "analyzer.resolution.fwhmEv",
@@ -122,7 +121,7 @@ export function suspectParameters(loaded: LoadedScenario): ScenarioParameter[] {
       [0, 0.5, 1, 2].filter((value) => value !== resolved.transmissionExponent),
     ),
     plain("acquisition.deadTimeS", deadTimeS, [0, Math.max(2e-6, deadTimeS)], deadTimes),
-    ...overlayer(scenario.sample as unknown as Record<string, unknown>),
+    ...overlayer(scenario.sample as unknown as Record<string, unknown>, w),
     {
       ...plain("sample.surface.patches", 0, [0, 0.6], [0.15, 0.4]),
       name: "patches with a work function lower by 0.3 eV",
@@ -150,8 +149,14 @@ function plain(
   return { name, unit, baseValue, range, values, overrides: (value) => [`${name}=${value}`] };
 }
 
-/** The thickness of the uppermost film, or of a film of carbon where there is none. */
-function overlayer({ layers }: Readonly<Record<string, unknown>>): ScenarioParameter[] {
+/** A film that hardly any sample from air is without. */
+const FILM = "C_contamination";
+
+/** The thickness of the uppermost film, or of a film of carbon, at the same work function, where there is none. */
+function overlayer(
+  { layers }: Readonly<Record<string, unknown>>,
+  workFunctionEv: number,
+): ScenarioParameter[] {
   const films = Array.isArray(layers) ? layers as { readonly thicknessNm: number }[] : [];
   if (films.length > 0) {
     const thickness = films[0].thicknessNm;
@@ -166,13 +171,14 @@ function overlayer({ layers }: Readonly<Record<string, unknown>>): ScenarioParam
       ) => [`sample.layers=${JSON.stringify([{ ...films[0], thicknessNm: value }, ...films.slice(1)])}`],
     }];
   }
-  const carbon = ["graphite", "C"].find((id) => (MATERIAL_IDS as readonly string[]).includes(id));
-  if (carbon === undefined) return [];
   return [{
     ...plain("overlayer thickness", 0, [0, 1.5], [0.3, 0.8, 1.5]),
-    name: `thickness of a film of ${carbon}`,
+    name: `thickness of a film of ${FILM}`,
     unit: "nm",
-    overrides: (value) => [`sample.layers=${JSON.stringify([{ material: carbon, thicknessNm: value }])}`],
+    overrides: (value) => [
+      `sample.layers=${JSON.stringify([{ material: FILM, thicknessNm: value }])}`,
+      `sample.workFunctionEv=${workFunctionEv}`,
+    ],
   }];
 }
 

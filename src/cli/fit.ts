@@ -20,6 +20,8 @@ export type FitStatements = Omit<MeasureOptions, "knownLine"> & {
 export interface FitRun {
   /** All regions read. */
   readonly regions: readonly EdgeRegion[];
+  /** `true` when every region says that it was simulated. */
+  readonly simulated: boolean;
   /** The answer. */
   readonly result: WorkFunctionResult;
 }
@@ -34,11 +36,15 @@ export interface FitRun {
 export async function fitFiles(paths: readonly string[], statements: FitStatements): Promise<FitRun> {
   const { columns, ...options } = statements;
   const regions: EdgeRegion[] = [];
+  let simulated = true;
   for (const path of paths) {
     const file = await readSpectrumFile(await readBytes(path), path, columns ? { columns } : {});
-    for (const region of file.regions) regions.push(edgeRegion(region, path));
+    for (const region of file.regions) {
+      regions.push(edgeRegion(region, path));
+      simulated &&= region.metadata.simulated === "true";
+    }
   }
-  return { regions, result: measureWorkFunction(regions, { ...options, knownLine: nearestLine }) };
+  return { regions, simulated, result: measureWorkFunction(regions, { ...options, knownLine: nearestLine }) };
 }
 
 /** What a fit needs of a region, with the facts that are metadata in the file. */

@@ -55,7 +55,7 @@ export const fitCommand = buildCommand({
   docs: {
     brief: "Fit both edges of a measured or simulated spectrum: work function with uncertainty",
     fullDescription: [
-      "Fit both edges of a measured or simulated spectrum (CSV or ISO 14976) and print work function, maximum kinetic",
+      "Fit both edges of a measured or simulated spectrum (CSV, ISO 14976, NeXus NXmpes) and print work function, maximum kinetic",
       "energy and ionization energy with uncertainties. Several files or regions of one measurement are joined; with",
       "--each every file is a measurement of its own.",
       "",
@@ -70,7 +70,7 @@ export const fitCommand = buildCommand({
   parameters: {
     positional: {
       kind: "array",
-      parameter: { parse: text, brief: "CSV or ISO 14976 file", placeholder: "FILE" },
+      parameter: { parse: text, brief: "CSV, ISO 14976 or NeXus NXmpes file", placeholder: "FILE" },
       minimum: 1,
     },
     flags: {

@@ -53,7 +53,7 @@ export function fitSvg(run: FitRun, title: string): Promise<string> {
       ? "Kinetic energy on the axis of the file / eV"
       : "h\u03bd \u2212 binding energy / eV",
     measured: shown.map((region) => ({
-      label: shown.length > 1 ? region.label || stem(region.file) : "",
+      label: shown.length > 1 ? region.label || stem(region.file) : run.simulated ? "simulated" : "measured",
       curve: region,
     })),
     expected: null,

@@ -115,7 +115,8 @@ function describe(region: SpectrumRegion): RegionSummary {
 
 function regionLines(region: RegionSummary, index: number): string[] {
   const { energies, counts, points } = region;
-  const unit = (value: number | null, units: string) => value === null ? "not given" : `${value} ${units}`;
+  const unit = (value: number | null, units: string) =>
+    value === null ? "not given" : `${Number(value.toPrecision(9))} ${units}`;
   const bias = region.biasV === null
     ? "not given"
     : `${region.biasV} V, ${
@@ -126,7 +127,8 @@ function regionLines(region: RegionSummary, index: number): string[] {
   const variables = Object.entries(region.metadata).filter(([key]) =>
     key.startsWith("experimental variable ")
   )
-    .map(([key, value]) => `${key.slice("experimental variable ".length)} ${value}`);
+    // ISO 14976 writes d for dimensionless and n for a unit that is not defined there.
+    .map(([key, value]) => `${key.slice("experimental variable ".length)} ${value.replace(/ [dn]$/, "")}`);
   const rows: readonly (readonly [string, string])[] = [
     ["axis", `${energies.kind === "unknown" ? "kind not given" : energies.kind} energy`],
     [

@@ -100,7 +100,7 @@ export const linesCommand = buildCommand({
   parameters: {
     positional: {
       kind: "tuple",
-      parameters: [{ parse: text, brief: "CSV or ISO 14976 file", placeholder: "FILE" }],
+      parameters: [{ parse: text, brief: "CSV, ISO 14976 or NeXus NXmpes file", placeholder: "FILE" }],
     },
     flags: {
       region: {

@@ -41,8 +41,8 @@ function slowFigure(
   return lossFigure({
     title,
     subtitle: [
-      "simulated: expected counts of photoelectrons before any event, and of scattered",
-      "and struck electrons with the dark counts",
+      "simulated: expected counts of photoelectrons before any event,",
+      "and of scattered and struck electrons, dark counts included",
     ],
     axisTitle: "Kinetic energy as recorded / eV",
     energiesEv: kineticEnergiesEv,

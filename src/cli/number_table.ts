@@ -33,6 +33,7 @@ export function readNumberTable(text: string, file: string, rules: TableRules): 
   };
   const known = (list: readonly string[], word: string): string => {
     const near = suggest(word, list);
+    if (list.length === 0) return "there must be none";
     return `it must be one of ${list.join(", ")}${near ? ` (did you mean ${near}?)` : ""}`;
   };
   const keys: Record<string, string> = {};

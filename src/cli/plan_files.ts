@@ -70,9 +70,7 @@ function tradeOffSvg({ ranking, best, request }: PlanAnswer, title: string): Pro
       return {
         label: settingsText(settings as RankedSetting["settings"]),
         timesS,
-        uncertaintiesEv: timesS.map((timeS) =>
-          uncertaintyAfter(varianceTimes, numbers.floorEv, timeS).uncertaintyEv
-        ),
+        uncertaintiesEv: timesS.map((timeS) => uncertaintyAfter(varianceTimes, numbers.floorEv, timeS)),
       };
     }),
   }));

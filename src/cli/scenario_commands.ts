@@ -41,7 +41,9 @@ export const materialsCommand = buildCommand({
     const lines = name === undefined
       ? values.map((entry) => `${entry.id.padEnd(17)}${entry.name}`)
       : values[0].values.map((row) =>
-        `${row.quantity}: ${row.value} ${row.unit} [${row.confidence}] ${row.source}`
+        `${row.quantity}: ${row.value}${
+          row.unit === "1" ? "" : ` ${row.unit}`
+        } [${row.confidence}] ${row.source}`
       );
     this.process.stdout.write(flags.json ? `${JSON.stringify(values, null, 2)}\n` : `${lines.join("\n")}\n`);
   },

@@ -260,8 +260,8 @@ export function measureWorkFunction(
   const expanded = (quantity: Quantity) => [quantity, expandedUncertainty(budget, quantity)] as const;
   return {
     workFunctionEv: answer(workFunction),
-    cutoffEv: cutoff?.converged ? combined(budget, "cutoffEv", cutoff.positionEv.value) : null,
-    fermiEdgeEv: fermi ? combined(budget, "fermiEdgeEv", fermi.edge.positionEv.value) : null,
+    cutoffEv: cutoff?.converged ? known(combined(budget, "cutoffEv", cutoff.positionEv.value)) : null,
+    fermiEdgeEv: fermi ? known(combined(budget, "fermiEdgeEv", fermi.edge.positionEv.value)) : null,
     valenceBandMaximumEv: valence && answer(combined(budget, "valenceBandMaximumEv", valenceMaximum)),
     valenceBandMaximumLogarithmicEv: answer(valenceMaximumLogarithmic),
     ionizationEnergyEv: answer(combined(budget, "ionizationEnergyEv", photonEnergyEv - edgeDifference)),
@@ -344,4 +344,9 @@ function bootstrapWorkFunction(
     value: photonEnergyEv - mean / gain,
     standardUncertainty: Math.hypot(low.standardDeviationEv, high?.standardDeviationEv ?? 0) / gain,
   };
+}
+
+/** An estimate whose uncertainty is not known is none. */
+function known(estimate: Estimate): Estimate | null {
+  return Number.isFinite(estimate.standardUncertainty) ? estimate : null;
 }

@@ -3,7 +3,7 @@ import { nearestLine } from "../data/mod.ts";
 import type { PlanFacts, Rates } from "./facts.ts";
 import { findings } from "./findings.ts";
 import { channelsOf, type PredictedNumbers, type Prediction, predictRun, type RunWindow } from "./predict.ts";
-import { leastTimeS, optimalShares, uncertaintyAfter } from "./split.ts";
+import { leastTimeS, optimalShares } from "./split.ts";
 
 /** What a run is to reach, and what it may take. */
 export interface PlanTarget {
@@ -56,7 +56,7 @@ export interface RunPlan {
   readonly timeS: number;
   /** Predicted combined standard uncertainty after that time, eV. */
   readonly uncertaintyEv: number;
-  /** Change of it by one minute more, eV. */
+  /** Change of it by one minute more, split between the windows as here, eV. */
   readonly nextMinuteEv: number;
   /** The prediction for these windows. */
   readonly numbers: PredictedNumbers | null;
@@ -263,7 +263,8 @@ function settle(
     windows,
     timeS,
     uncertaintyEv,
-    nextMinuteEv: uncertaintyAfter(varianceTimes, numbers.floorEv, timeS).nextMinuteEv,
+    nextMinuteEv: Math.hypot(statisticalEv * Math.sqrt(timeS / (timeS + 60)), numbers.floorEv) -
+      uncertaintyEv,
     numbers: { ...numbers, statisticalEv },
     findings: findings(facts, prediction, windows),
   };

@@ -28,22 +28,20 @@ export function optimalShares(varianceTimes: readonly number[]): number[] {
  * @param varianceTimes Variance times time of each part, eV^2 s, each > 0.
  * @param floorEv What does not shrink with time, eV, >= 0.
  * @param timeS Time, s, > 0.
- * @returns Combined standard uncertainty, eV, and by how much it changes in the next minute, eV (< 0).
+ * @returns Combined standard uncertainty, eV.
  * @example Without a floor four times the time halves the uncertainty
  * ```ts
  * import { uncertaintyAfter } from "@twoedge/twoedge";
  * import assert from "node:assert/strict";
- * assert.equal(uncertaintyAfter([1, 1], 0, 100).uncertaintyEv / uncertaintyAfter([1, 1], 0, 400).uncertaintyEv, 2);
+ * assert.equal(uncertaintyAfter([1, 1], 0, 100) / uncertaintyAfter([1, 1], 0, 400), 2);
  * ```
  */
 export function uncertaintyAfter(
   varianceTimes: readonly number[],
   floorEv: number,
   timeS: number,
-): { readonly uncertaintyEv: number; readonly nextMinuteEv: number } {
-  const root = rootSum(varianceTimes);
-  const after = (time: number): number => Math.hypot(root / Math.sqrt(time), floorEv);
-  return { uncertaintyEv: after(timeS), nextMinuteEv: after(timeS + 60) - after(timeS) };
+): number {
+  return Math.hypot(rootSum(varianceTimes) / Math.sqrt(timeS), floorEv);
 }
 
 /**

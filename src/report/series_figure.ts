@@ -67,11 +67,17 @@ export function seriesFigure(input: SeriesFigureInput): Record<string, unknown> 
     scale: { zero: false, nice: false, padding: 12, reverse: isReversed },
     axis: { title: xTitle },
   };
+  const highest = series.reduce(
+    (most, { y }) => Array.from(y).reduce((a, b) => Math.max(a, Math.abs(b)), most),
+    0,
+  );
+  // Small currents and yields as powers of ten, without rows of zeros.
+  const small = highest < 1e-3 ? { labelExpr: "datum.value === 0 ? '0' : format(datum.value, '~e')" } : {};
   const y = {
     field: "y",
     type: "quantitative",
     scale: { zero: false, nice: false, padding: 12 },
-    axis: { title: yTitle },
+    axis: { title: yTitle, ...small },
   };
   const layer = series.flatMap(({ label, yUncertainties, mark, ...curve }, i) => {
     const { color, dash } = STYLES[i % STYLES.length];

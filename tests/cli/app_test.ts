@@ -142,5 +142,7 @@ Deno.test("materials NAME prints one number a line", async () => {
     const [gold] = JSON.parse((await twoedge(folder, "materials", "Au", "--json")).stdout);
     assert.equal(stdout.trimEnd().split("\n").length, gold.values.length);
     assert.ok(stdout.trimEnd().split("\n").every((line) => /^.+: \S+ .*\[[a-z-]+\] .+$/.test(line)));
+    // A ratio has no unit to print.
+    assert.doesNotMatch(stdout, /: .+ 1 \[/);
   });
 });

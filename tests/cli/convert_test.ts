@@ -146,6 +146,13 @@ Deno.test("inspect says what a fit would use and assume, and that data are simul
     );
     assert.match(stdout, /\n {2}temperature +300 K, not known, 300 K assumed\n/);
   });
+  // Nine digits are enough to read: the lamp line of simulated files has seventeen.
+  await inFolder(
+    { "b.csv": CSV.replace(/photon_energy_ev: .*/, "photon_energy_ev: 21.218022919822868") },
+    async (folder) => {
+      assert.match((await twoedge(folder, "inspect", "b.csv")).stdout, /\n {2}photon energy +21\.2180229 eV/);
+    },
+  );
 });
 
 Deno.test("inspect --json prints one object with the same facts", async () => {

@@ -1,7 +1,9 @@
 import assert from "node:assert/strict";
 import { csvParts, GOLD, goldRun, inFolder, namesIn, twoedge, twoedgeCommand } from "../support/twoedge.ts";
+import { textsOf } from "../support/drawing.ts";
 import { assertClose } from "../support/assert_close.ts";
 
+const X_RAYS = new URL("../../scenarios/gold_under_aluminum_al_kalpha.json", import.meta.url).pathname;
 const FILES = ["losses.svg", "result.json", "spectrum.csv", "spectrum.svg"];
 /** The smallest run: two batches. */
 const SMALL = ["--histories", "8192", "--workers", "1"];
@@ -86,6 +88,35 @@ Deno.test("simulate draws a figure that calls the data simulated", async () => {
   assert.match(svg, /^<svg [\s\S]*<\/svg>\s*$/);
   assert.match(svg, /Kinetic energy as recorded \/ eV/);
   assert.match(svg, /simulated/);
+});
+
+Deno.test("simulate draws what slow electrons went through, in counts", async () => {
+  await inFolder({}, async (folder) => {
+    assert.equal((await twoedge(folder, "simulate", GOLD, ...SMALL, "--out", "a")).code, 0);
+    const texts = textsOf(Deno.readTextFileSync(`${folder}/a/losses.svg`));
+    for (const word of ["before any event", "after events", "all", "Counts"]) {
+      assert.ok(texts.includes(word), `"${word}" is not among ${texts.join(" | ")}`);
+    }
+  });
+});
+
+Deno.test("simulate tells and draws the number of losses, and the depths, of lines under X-rays", async () => {
+  await inFolder({}, async (folder) => {
+    assert.equal((await twoedge(folder, "simulate", X_RAYS, ...SMALL, "--out", "a")).code, 0);
+    assert.deepEqual(namesIn(`${folder}/a`), ["depths.svg", ...FILES]);
+    const { levels } = JSON.parse(Deno.readTextFileSync(`${folder}/a/result.json`));
+    assert.ok(levels.length > 0);
+    for (const { name, partialIntensities } of levels) {
+      assert.equal(partialIntensities[0], 1, name);
+      // 70 eV are followed, and all materials lose 10 to 30 eV at a time: no more than some ten losses.
+      assert.ok(partialIntensities.every((value: number) => value >= 0 && value < 1.5), name);
+      assert.ok(partialIntensities.at(-1) < 0.01, name);
+    }
+    const texts = textsOf(Deno.readTextFileSync(`${folder}/a/losses.svg`));
+    for (const word of ["Number of energy losses", ...levels.map(({ name }: { name: string }) => name)]) {
+      assert.ok(texts.includes(word), `"${word}" is not among ${texts.join(" | ")}`);
+    }
+  });
 });
 
 Deno.test("simulate writes the same bytes when the seed is the same, on any number of workers", async () => {

@@ -37,6 +37,24 @@ Deno.test("planRun() gives windows that can be set: whole sweeps, channels, and 
   }
 });
 
+Deno.test("planRun() says what one minute more of its own windows changes, also where sweeps are not split ideally", () => {
+  // So coarse a target takes a second or so, and the least dwell of a channel then sets the split.
+  const coarse = planRun(RATES, FACTS, { ...TARGET, targetEv: 0.02 });
+  for (const one of [plan, coarse]) {
+    const { windows, timeS, numbers, uncertaintyEv, nextMinuteEv } = one;
+    const variances = varianceTimes(one);
+    const after = (times: readonly number[]): number =>
+      Math.sqrt(variances.reduce((sum, v, i) => sum + v / times[i], numbers!.floorEv ** 2));
+    const longer = windows.map((window) => window.timeS * (1 + 60 / timeS));
+    assertClose(uncertaintyEv + nextMinuteEv, after(longer), { relative: 1e-9 });
+    assert.throws(() =>
+      assertClose(uncertaintyEv + nextMinuteEv, after(windows.map(({ timeS }) => timeS)), {
+        relative: 1e-9,
+      })
+    );
+  }
+});
+
 Deno.test("planRun() takes half the time to measure twice the rate", () => {
   // Poisson: the information of a window is proportional to rate times time.
   const bright = planRun({ ...RATES, countsPerS: RATES.countsPerS.map((rate) => 2 * rate) }, FACTS, TARGET);

@@ -47,7 +47,7 @@ Deno.test("leastTimeS() is the time after which the uncertainty is the target", 
       (a, b, floorShare) => {
         const floorEv = 0.01 * floorShare;
         const timeS = leastTimeS([a, b], floorEv, 0.01);
-        assertClose(uncertaintyAfter([a, b], floorEv, timeS).uncertaintyEv, 0.01, { relative: 1e-9 });
+        assertClose(uncertaintyAfter([a, b], floorEv, timeS), 0.01, { relative: 1e-9 });
         // The same from the two parts by themselves.
         const [first, second] = optimalShares([a, b]).map((share, i) => [a, b][i] / (share * timeS));
         assertClose(Math.sqrt(first + second + floorEv ** 2), 0.01, { relative: 1e-9 });
@@ -62,11 +62,9 @@ Deno.test("leastTimeS() is infinite when the target is not above the floor", () 
   assert.equal(leastTimeS([1, 1], 0.02, 0.01), Infinity);
 });
 
-Deno.test("uncertaintyAfter() gives the change of the next minute, never above zero", () => {
-  const { uncertaintyEv, nextMinuteEv } = uncertaintyAfter([1e-4, 4e-4], 0.002, 600);
+Deno.test("uncertaintyAfter() adds the floor in squares to what the ideal split leaves", () => {
   // (sqrt v1 + sqrt v2)^2 = 9e-4 eV^2 s.
-  assertClose(uncertaintyEv, Math.sqrt(9e-4 / 600 + 4e-6), { relative: 1e-12 });
-  assertClose(nextMinuteEv, Math.sqrt(9e-4 / 660 + 4e-6) - Math.sqrt(9e-4 / 600 + 4e-6), { relative: 1e-9 });
+  assertClose(uncertaintyAfter([1e-4, 4e-4], 0.002, 600), Math.sqrt(9e-4 / 600 + 4e-6), { relative: 1e-12 });
 });
 
 Deno.test("the functions of a split refuse variances and targets that are not above zero", () => {

@@ -116,6 +116,11 @@ Deno.test("series refuses files that break a rule, with place and value, and pri
     ["stopping", STOPPING.replace("plane", "flat"), /it must be plane or sphere: current value is "flat"/],
     ["bias", "bias_v,work_function_ev,work_function_uncertainty_ev\n", /there must be rows of numbers/],
     ["bias", BIAS.replace("0.01", "0"), /standard uncertainty of work function \d must be > 0 eV/],
+    [
+      "bias",
+      `# temperature_k: 300\n${BIAS}`,
+      /read the key as there must be none: current value is "temperature_k"/,
+    ],
     ["nothing", BIAS, /must be one of fowler, stopping, kemax, bias, temperature/],
   ];
   await Promise.all(cases.map(([kind, csv, message]) =>

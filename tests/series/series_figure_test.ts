@@ -23,6 +23,21 @@ Deno.test("seriesFigure() draws titles, legend and bars without warnings, the sa
   assert.equal(await renderSvg(seriesFigure(INPUT)), svg);
 });
 
+Deno.test("seriesFigure() writes small ordinates as powers of ten and others plainly", async () => {
+  const [first] = INPUT.series;
+  const svgOf = (scale: number): Promise<string> =>
+    renderSvg(seriesFigure({
+      ...INPUT,
+      series: [{ ...first, y: Array.from(first.y, (y) => y * scale), yUncertainties: null }],
+    }));
+  const labels = (svg: string): string[] =>
+    Array.from(svg.matchAll(/>([^<>]+)<\/text>/g), ([, text]) => text);
+  const small = labels(await svgOf(1e-12));
+  assert.ok(small.includes("2e-12"), small.join(" "));
+  assert.ok(small.includes("0") && !small.some((text) => text.startsWith("0.0000")), small.join(" "));
+  assert.ok(labels(await svgOf(1)).includes("2.0"));
+});
+
 Deno.test("seriesFigure() refuses numbers that cannot be drawn", () => {
   const [first] = INPUT.series;
   assert.throws(() => seriesFigure({ ...INPUT, series: [] }), {
