@@ -88,7 +88,7 @@ export function suspectParameters(loaded: LoadedScenario): ScenarioParameter[] {
     plain("sample.workFunctionEv", w, [w - 0.3, w + 0.3], [w - 0.3, w + 0.3]),
     ...(t < 20
       ? [plain("sample.temperatureK", t, [0, 300], [100, 200, 300])]
-      : [plain("sample.temperatureK", t, [0.2 * t, 1.8 * t], [0.2 * t, 0.5 * t, 1.4 * t, 1.8 * t])]),
+      : [plain("sample.temperatureK", t, [0.2 * t, 1.8 * t], [0.2, 0.4, 0.7, 1.4, 1.8].map((f) => f * t))]),
     {
       ...plain(
         "analyzer.resolution.fwhmEv",
