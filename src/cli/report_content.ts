@@ -217,10 +217,22 @@ function fitAnswer(fit: FitFile): string[] {
   ];
 }
 
+/** Of a surface with several work functions, which they are and that the one quoted is their mean; else empty. */
+export function workFunctionsText(patches: readonly { readonly workFunctionEv: number }[]): string {
+  const ascendingEv = patches.map(({ workFunctionEv }) => workFunctionEv).sort((a, b) => a - b);
+  const [lowestEv, highestEv] = [ascendingEv[0], ascendingEv.at(-1)];
+  if (lowestEv === undefined || highestEv === undefined || lowestEv === highestEv) return "";
+  return `area mean of ${lowestEv.toFixed(3)} to ${highestEv.toFixed(3)} eV`;
+}
+
 function simulationAnswer(result: ResultFile, fit: FitFile | null): string[] {
-  const { truth, complete, histories } = result;
-  const put = `These are simulated data: the work function put in is ${truth.workFunctionEv.toFixed(3)} eV`;
-  const found = fit?.workFunctionEv ?? null;
+  const { truth, complete, histories, patches } = result;
+  const spread = workFunctionsText(patches);
+  const put = `These are simulated data: the work function put in is ${truth.workFunctionEv.toFixed(3)} eV${
+    spread && `, ${spread}`
+  }`;
+  // Which of several work functions the cutoff shows is not told by their mean.
+  const found = spread === "" ? fit?.workFunctionEv ?? null : null;
   const away = found === null ? NaN : (found.value - truth.workFunctionEv) / found.standardUncertainty;
   return [
     Number.isFinite(away)

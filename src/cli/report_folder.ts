@@ -70,6 +70,7 @@ const resultSchema = z.object({
     cutoffEv: z.number(),
     fermiEdgeEv: z.number(),
   }),
+  patches: z.array(z.object({ workFunctionEv: z.number() })),
   warnings: z.array(z.object({ message: z.string(), place: z.string() })),
   scenario: z.record(z.string(), z.unknown()),
 });

@@ -17,6 +17,7 @@ import {
 } from "./flags.ts";
 import { lossesSvg } from "./losses_svg.ts";
 import { progressLine } from "./progress.ts";
+import { workFunctionsText } from "./report_content.ts";
 import {
   loadScenario,
   simulate,
@@ -133,12 +134,13 @@ export const simulateCommand = buildCommand({
       return;
     }
     const { result } = simulation;
+    const spread = workFunctionsText(result.patches);
     this.process.stdout.write([
       `${result.title}: ${result.histories} histories, scenario ${result.scenarioHash}`,
-      `  work function put in       ${result.truth.workFunctionEv.toFixed(3)} eV`,
+      `  work function put in       ${result.truth.workFunctionEv.toFixed(3)} eV${spread && `, ${spread}`}`,
       `  cutoff / Fermi edge        ${result.truth.cutoffEv.toFixed(3)} / ${
         result.truth.fermiEdgeEv.toFixed(3)
-      } eV as recorded`,
+      } eV as recorded${spread && ", cutoff of that mean"}`,
       `  highest expected counts    ${result.peakCounts.toPrecision(4)} in a channel`,
       `  Monte Carlo standard error at most ${
         (100 * result.worstRelativeStandardError).toPrecision(2)

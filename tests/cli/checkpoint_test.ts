@@ -3,7 +3,7 @@ import { QUICK_GOLD } from "../support/sweep_text.ts";
 import { inFolder, namesIn, twoedge } from "../support/twoedge.ts";
 
 const FILES = { "gold.json": QUICK_GOLD };
-const OUTPUT = ["losses.svg", "result.json", "spectrum.csv", "spectrum.svg"];
+const OUTPUT = ["result.json", "spectrum.csv", "spectrum.svg", "losses.svg"];
 
 function read(folder: string, names: readonly string[] = OUTPUT): string[] {
   return names.map((name) => Deno.readTextFileSync(`${folder}/${name}`));

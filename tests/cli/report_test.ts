@@ -262,6 +262,26 @@ Deno.test("fit --plot and simulate --plot draw text of 80 columns without contro
   });
 });
 
+Deno.test("simulate and report call the work function of a patchy surface a mean, and compare no fit with it", async () => {
+  const files = await fitted();
+  const patches = [4.7, 5.2].map((workFunctionEv) => ({ share: 0.5, workFunctionEv, facetTiltDeg: 0 }));
+  const result = JSON.stringify({ ...JSON.parse(files["result.json"]), patches });
+  await inFolder({ ...files, "result.json": result }, async (folder) => {
+    const { stdout } = await twoedge(folder, "report", ".");
+    assert.match(stdout, /the work function put in is 5\.100 eV, area mean of 4\.700 to 5\.200 eV\.\n/);
+    assert.doesNotMatch(stdout, /differs by/);
+    const scenario = new URL("../../scenarios/patchy_gold_he1.json", import.meta.url).pathname;
+    const simulated = await twoedge(folder, "simulate", scenario, "--histories", "8192", "--out", "p");
+    // A quarter at 4.7 eV, the rest at 5.2 eV.
+    assert.match(simulated.stdout, /work function put in +5\.075 eV, area mean of 4\.700 to 5\.200 eV\n/);
+    assert.match(simulated.stdout, /eV as recorded, cutoff of that mean\n/);
+  });
+  await inFolder(files, async (folder) => {
+    const { stdout } = await twoedge(folder, "report", ".");
+    assert.match(stdout, /the work function put in is 5\.100 eV; the one found differs by/);
+  });
+});
+
 Deno.test("simulate also draws where electrons come from when there are core levels, and report shows it", async () => {
   const scenario = new URL("../../scenarios/gold_under_aluminum_al_kalpha.json", import.meta.url).pathname;
   await inFolder({}, async (folder) => {
