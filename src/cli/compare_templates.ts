@@ -1,5 +1,6 @@
 import { type Template, type TemplateFamily, templateFamily, type TemplateNode } from "../compare/mod.ts";
-import { type EngineData, engineData, expectedSpectrum } from "../model/mod.ts";
+import { engineData, expectedSpectrum } from "../model/mod.ts";
+import type { EngineData } from "../transport/mod.ts";
 import { batchesFor, runHistories } from "../run/mod.ts";
 import type { ResolvedScenario } from "../scenario/mod.ts";
 import { engineKey } from "../sweep/mod.ts";

@@ -1,7 +1,7 @@
 import { streamState, Xoshiro128pp } from "../rng/mod.ts";
 import type { ResolvedScenario } from "../scenario/mod.ts";
 import type { Tally } from "../transport/mod.ts";
-import type { PairEngineData } from "./engine.ts";
+import type { PairEngineData } from "../transport/mod.ts";
 
 /** A cell in which the sample lights a collector that is wired to it through a voltage source. */
 export interface CellSettings {

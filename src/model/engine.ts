@@ -5,24 +5,20 @@ import { accelerationEv } from "../instrument/mod.ts";
 import {
   DEPTH_CELLS_PER_PATH,
   detectionTable,
-  type DirectLine,
   directLines,
   directYield,
   type EnergyGrid,
   energyGrid,
+  type EngineData,
   excitationWeights,
-  type Histories,
-  historyRunner,
-  type LayerStack,
+  type FastEngineData,
   layerStack,
-  lossHistoryRunner,
   lossLayout,
   type LossMedium,
+  type PairEngineData,
   pairTables,
-  type PhotonSource,
   photonSource,
   type PhotonSourceInput,
-  type SurfacePart,
 } from "../transport/mod.ts";
 
 /** Depth, in mean free paths, beyond which an electron is not scored: exp(-16) = 1e-7. */
@@ -30,37 +26,6 @@ const DEEPEST_PATHS = 16;
 
 /** Slabs of equal thickness that stand for a profile of band bending. */
 const BENDING_SLABS = 16;
-
-/** Everything the histories need, as plain data that can be sent to a worker. */
-export type EngineData = PairEngineData | FastEngineData;
-
-/** Slow electrons: pair kernel. */
-export interface PairEngineData {
-  /** Which kernel. */
-  readonly kind: "pair";
-  /** Entries of the tally. */
-  readonly tallySize: number;
-  /** First event; null when no photon can lift an electron above the Fermi level. */
-  readonly source: PhotonSource | null;
-  /** Scattering, layer by layer. */
-  readonly stack: LayerStack;
-  /** Barriers and acceptances of the parts of the surface. */
-  readonly surface: readonly SurfacePart[];
-  /** Expected electrons per absorbed photon that reach the analyzer without an event, shape (bins). */
-  readonly direct: Float64Array;
-}
-
-/** Fast electrons: loss kernel. */
-export interface FastEngineData {
-  /** Which kernel. */
-  readonly kind: "loss";
-  /** Entries of the tally. */
-  readonly tallySize: number;
-  /** Layers, lines and detection. */
-  readonly medium: LossMedium;
-  /** What of each line needs no histories. */
-  readonly direct: readonly DirectLine[];
-}
 
 /**
  * Builds the sampling tables of a scenario; takes some tenths of a second.
@@ -174,17 +139,6 @@ function fastEngine(resolved: ResolvedScenario, fast: ResolvedFast): FastEngineD
     medium,
     direct: directLines(medium),
   };
-}
-
-/**
- * Makes engine data runnable, here or in a worker that received it.
- *
- * @param data From {@link engineData}.
- * @returns Runs one batch; null when there is nothing to run.
- */
-export function engineFrom(data: EngineData): Histories | null {
-  if (data.kind === "loss") return lossHistoryRunner(data.medium);
-  return data.source === null ? null : historyRunner(data.source, data.stack, data.surface);
 }
 
 function radians(degrees: number): number {

@@ -2,7 +2,7 @@ import { applyResponse, drawCounts, expectedCounts, responseMatrix, windowEv } f
 import { streamState, Xoshiro128pp } from "../rng/mod.ts";
 import type { ResolvedScenario } from "../scenario/mod.ts";
 import type { Tally } from "../transport/mod.ts";
-import type { EngineData, PairEngineData } from "./engine.ts";
+import type { EngineData, PairEngineData } from "../transport/mod.ts";
 import { type ExpectedLevel, expectedLevels, fastResponse } from "./fast.ts";
 import type { EngineResponse } from "./response.ts";
 

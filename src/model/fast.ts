@@ -1,7 +1,7 @@
 import { lineProfile } from "../spectrum/mod.ts";
 import type { ResolvedFast, ResolvedScenario } from "../scenario/mod.ts";
 import { type LossLayout, lossLayout, type Tally } from "../transport/mod.ts";
-import type { FastEngineData } from "./engine.ts";
+import type { FastEngineData } from "../transport/mod.ts";
 import type { EngineResponse } from "./response.ts";
 import { surfaceLosses } from "./surface_losses.ts";
 

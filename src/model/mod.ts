@@ -4,14 +4,7 @@
  *
  * @module
  */
-export {
-  type EngineData,
-  engineData,
-  engineFrom,
-  type FastEngineData,
-  type PairEngineData,
-  pairEngineData,
-} from "./engine.ts";
+export { engineData, pairEngineData } from "./engine.ts";
 export { type CellCurve, cellCurve, type CellSettings, collectingAll, noisyCurrents } from "./cell.ts";
 export { countSpectrum, type ExpectedSpectrum, expectedSpectrum } from "./expected.ts";
 export type { ExpectedLevel } from "./fast.ts";

@@ -1,5 +1,5 @@
 import { Worker } from "node:worker_threads";
-import { type EngineData, engineFrom } from "../model/mod.ts";
+import { type EngineData, engineFrom } from "../transport/mod.ts";
 import {
   type BatchTally,
   emptyBatchTally,

@@ -1,6 +1,7 @@
 import { nearestLine } from "../data/mod.ts";
 import { measureWorkFunction } from "../edges/mod.ts";
-import { countSpectrum, type EngineData, engineData, expectedSpectrum } from "../model/mod.ts";
+import { countSpectrum, engineData, expectedSpectrum } from "../model/mod.ts";
+import type { EngineData } from "../transport/mod.ts";
 import type { ResolvedScenario } from "../scenario/mod.ts";
 import { FITTED_QUANTITIES, type PointJob, type PointValues, uncertaintyName } from "../sweep/mod.ts";
 import type { Tally } from "../transport/mod.ts";

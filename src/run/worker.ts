@@ -4,7 +4,7 @@
  * @module
  */
 import { parentPort } from "node:worker_threads";
-import { type EngineData, engineFrom } from "../model/mod.ts";
+import { type EngineData, engineFrom } from "../transport/mod.ts";
 import { type BatchTally, emptyBatchTally, type Histories } from "../transport/mod.ts";
 
 /** What a worker is told. */

@@ -41,4 +41,5 @@ export {
   type LossMedium,
   type LossSource,
 } from "./loss_kernel.ts";
+export { type EngineData, engineFrom, type FastEngineData, type PairEngineData } from "./engine.ts";
 export { type Tally, TallyAccumulator } from "./tally.ts";

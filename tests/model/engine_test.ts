@@ -1,5 +1,6 @@
 import assert from "node:assert/strict";
-import { countSpectrum, expectedSpectrum, type PairEngineData, pairEngineData } from "../../src/model/mod.ts";
+import { countSpectrum, expectedSpectrum, pairEngineData } from "../../src/model/mod.ts";
+import type { PairEngineData } from "../../src/transport/mod.ts";
 import { runSeries } from "../../src/run/mod.ts";
 import { assertClose } from "../support/assert_close.ts";
 import { flatMetal, type FlatMetalChanges } from "../support/flat_metal.ts";

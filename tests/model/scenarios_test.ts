@@ -1,7 +1,8 @@
 import assert from "node:assert/strict";
 import { fileURLToPath } from "node:url";
 import { loadScenario } from "../../src/cli/simulate.ts";
-import { type PairEngineData, pairEngineData } from "../../src/model/mod.ts";
+import { pairEngineData } from "../../src/model/mod.ts";
+import type { PairEngineData } from "../../src/transport/mod.ts";
 import { runSeries } from "../../src/run/mod.ts";
 import type { ResolvedScenario } from "../../src/scenario/mod.ts";
 import type { Tally } from "../../src/transport/mod.ts";

@@ -1,6 +1,7 @@
 import assert from "node:assert/strict";
 import process from "node:process";
-import { engineData, engineFrom } from "../../src/model/mod.ts";
+import { engineData } from "../../src/model/mod.ts";
+import { engineFrom } from "../../src/transport/mod.ts";
 import { parseScenario, resolveScenario } from "../../src/scenario/mod.ts";
 import { emptyBatchTally, type Histories, HISTORIES_PER_BATCH } from "../../src/transport/mod.ts";
 
