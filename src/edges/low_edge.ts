@@ -37,10 +37,9 @@ export function findCutoff(
   const options = { ramp, intervals };
   const one = fitCutoff(region.energiesEv, region.counts, candidate, options);
   if (one === null) return null;
-  const rises = candidates.filter((other) => other.significance > 0 && other !== candidate)
-    .map((other) => other.energyEv);
+  const rises = candidates.filter((other) => other.significance > 0).map((other) => other.energyEv);
   const isSuspicious = one.tests.chiSquareProbability < SUSPICIOUS || one.lateRise > LATE_RISE_SHARE ||
-    rises.some((rise) => rise < one.positionEv.value);
+    rises.some((rise) => rise < one.positionEv.value && rise !== candidate.energyEv);
   const two = isSuspicious || !one.converged
     ? fitPatches(region.energiesEv, region.counts, one, rises, options)
     : null;

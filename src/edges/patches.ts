@@ -34,6 +34,8 @@ const ENOUGH = 0.05;
 /** Distances between the steps that are tried beside those of rises that are seen: in widths of the edge, and eV. */
 const TRIED_WIDTHS = 3;
 const TRIED_EV = 0.4;
+/** Two rises are seen apart where their distance is many times the width of each. */
+const SEEN_WIDTHS = 8;
 
 /**
  * Decides between one cutoff and two: both models are fitted to the same window, and two are taken where the Bayesian
@@ -45,7 +47,7 @@ const TRIED_EV = 0.4;
  * @param energiesEv All energies, ascending, eV.
  * @param counts All counts.
  * @param one The fit of one cutoff.
- * @param risesEv Other places where the counts rise, eV.
+ * @param risesEv Places where the counts rise, that of the one cutoff included, eV.
  * @param options As for the fit of one.
  * @returns The two cutoffs, and the fit with the position of the lower one; null when one is enough.
  */
@@ -92,15 +94,20 @@ export function fitPatches(
   }
 
   const model = cutoffModel(window, options.ramp, "second step");
+  // Two rises that are seen apart are sharper than one step over both; a poor fit of one says little about the width.
+  const seen = risesEv.filter((rise) => rise > low && rise < high).sort((a, b) => a - b);
   const starts = [
-    ...near.map((rise) => [Math.min(rise, position), Math.abs(rise - position)] as const),
-    ...[TRIED_EV, TRIED_WIDTHS * sigma].map((distance) => [position - 0.3 * distance, distance] as const),
+    ...seen.slice(1).map((rise) => [seen[0], rise - seen[0], (rise - seen[0]) / SEEN_WIDTHS] as const),
+    ...near.map((rise) => [Math.min(rise, position), Math.abs(rise - position), sigma] as const),
+    ...[TRIED_EV, TRIED_WIDTHS * sigma].map((distance) =>
+      [position - 0.3 * distance, distance, sigma] as const
+    ),
   ].filter(([lower, separation]) => lower > window[0] && separation > 2 * stepEv && separation < 2 * NEAR_EV);
   let best: { readonly problem: PoissonProblem; readonly fit: PoissonFit } | null = null;
-  for (const [lower, separation] of starts) {
+  for (const [lower, separation, width] of starts) {
     const problem = {
       parameters: [
-        ...stepParameters(window, { ...start, positionEv: lower, sigmaEv: Math.min(sigma, separation / 2) }),
+        ...stepParameters(window, { ...start, positionEv: lower, sigmaEv: Math.min(width, separation / 2) }),
         { name: "separation", start: separation, lower: stepEv, upper: 2 * NEAR_EV, scale: sigma },
         { name: "share", start: 1, lower: 0, upper: 1 / LEAST_SHARE, scale: 1 },
       ].map((parameter, i) =>

@@ -137,3 +137,19 @@ for (
     assert.match(result.reasons.join("\n"), reason);
   });
 }
+
+Deno.test("measureWorkFunction() gives the lower work function of two patches, and doubts it", async () => {
+  const patches = JSON.stringify([
+    { areaFraction: 0.25, workFunctionEv: 4.7 },
+    { areaFraction: 0.75, workFunctionEv: 5.2 },
+  ]);
+  const run = await simulated(`sample.surface.patches=${patches}`, "acquisition.startEv=8.4");
+  for (let replicate = 0; replicate < 5; replicate++) {
+    const { verdict, reasons, workFunctionEv } = measured(run, countSpectrum(run.spectrum, 70 + replicate));
+    assert.equal(verdict, "doubtful");
+    assert.match(reasons.join("\n"), /one step does not describe the secondary cutoff/);
+    // 4.7 eV was put in; five standard uncertainties, false alarm below one in a million.
+    assert.ok(Math.abs(workFunctionEv!.value - 4.7) < 5 * workFunctionEv!.standardUncertainty);
+    assert.ok(workFunctionEv!.standardUncertainty < 0.03);
+  }
+});
