@@ -71,7 +71,16 @@ export function suggest(word: string, candidates: readonly string[]): string | u
   return best;
 }
 
-function editDistance(a: string, b: string): number {
+/**
+ * Letters to be changed, left out or added to make one word of another.
+ *
+ * Source: V. Levenshtein, Sov. Phys. Dokl. 10, 707 (1966).
+ *
+ * @param a A word.
+ * @param b Another one.
+ * @returns A whole number >= 0.
+ */
+export function editDistance(a: string, b: string): number {
   let previous = Array.from({ length: b.length + 1 }, (_, j) => j);
   for (let i = 1; i <= a.length; i++) {
     const current = [i];

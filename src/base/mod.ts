@@ -3,7 +3,7 @@
  *
  * @module
  */
-export { cannot, InputError, type Problem, suggest } from "./errors.ts";
+export { cannot, editDistance, InputError, type Problem, suggest } from "./errors.ts";
 export { type JsonText, pointerStep, readJsonText } from "./json_text.ts";
 export { VERSION } from "./version.ts";
 export type { Estimate, Notice } from "./values.ts";

@@ -10,6 +10,9 @@ import {
 import { readSpectrumFile, type SpectrumRegion } from "../formats/mod.ts";
 import { readBytes } from "./files.ts";
 
+/** The ramp of a cutoff widens with the tangent of the acceptance half-angle, which has no value at 90 degrees. */
+export const MOST_ACCEPTANCE_DEG = 89;
+
 /** What the user states on the command line. */
 export type FitStatements = Omit<MeasureOptions, "knownLine"> & {
   /** Names of the energy and the counts column of a CSV file. */
@@ -49,13 +52,15 @@ export async function fitFiles(paths: readonly string[], statements: FitStatemen
 
 /** What a fit needs of a region, with the facts that are metadata in the file. */
 function edgeRegion(region: SpectrumRegion, file: string): EdgeRegion {
-  const number = (key: string): number | null => {
-    const text = region.metadata[key];
-    return text === undefined || text === "" || !Number.isFinite(Number(text)) ? null : Number(text);
-  };
-  const positive = (key: string): number | null => {
-    const value = number(key);
-    return value !== null && value > 0 ? value : null;
+  /** A number that the file gives, which must be in a range. */
+  const number = (key: string, rule: string, isRight: (value: number) => boolean): number | null => {
+    const text = region.metadata[key] ?? "";
+    if (text === "") return null;
+    if (Number.isFinite(Number(text)) && isRight(Number(text))) return Number(text);
+    throw new InputError([{
+      place: region.label === "" ? file : `${file}, region ${region.label}`,
+      message: cannot("fit spectrum", `${key} ${rule}`, text),
+    }]);
   };
   return {
     label: region.label,
@@ -67,10 +72,18 @@ function edgeRegion(region: SpectrumRegion, file: string): EdgeRegion {
     biasV: region.biasV,
     asRecorded: region.asRecorded,
     analyzerWorkFunctionEv: region.analyzerWorkFunctionEv,
-    acceptanceHalfAngleDeg: number("acceptance_half_angle_deg"),
-    temperatureK: number("temperature_k"),
-    resolutionFwhmEv: positive("resolution_fwhm_ev"),
-    deadTimeS: positive("dead_time_s"),
+    acceptanceHalfAngleDeg: number(
+      "acceptance_half_angle_deg",
+      `must be in 0..${MOST_ACCEPTANCE_DEG} degrees`,
+      (value) => value >= 0 && value <= MOST_ACCEPTANCE_DEG,
+    ),
+    temperatureK: number("temperature_k", "must be >= 0 K", (value) => value >= 0),
+    resolutionFwhmEv: number(
+      "resolution_fwhm_ev",
+      "must be > 0 eV, or left out where unknown",
+      (value) => value > 0,
+    ),
+    deadTimeS: number("dead_time_s", "must be >= 0 s", (value) => value >= 0),
     countingTimeS: region.dwellS === null || region.sweeps === null ? null : region.dwellS * region.sweeps,
   };
 }

@@ -3,7 +3,7 @@ import { cannot, InputError } from "../base/mod.ts";
 import type { Verdict } from "../edges/mod.ts";
 import { readCalibration } from "./calibration_file.ts";
 import { stem, writeFiles } from "./files.ts";
-import { fitFiles, fitJson, type FitStatements } from "./fit.ts";
+import { fitFiles, fitJson, type FitStatements, MOST_ACCEPTANCE_DEG } from "./fit.ts";
 import { fitEach } from "./fit_each.ts";
 import { fitSvg, regionsOnFitAxis } from "./fit_figure.ts";
 import { explanationText, fitText } from "./fit_text.ts";
@@ -180,7 +180,7 @@ async function fitStatements(flags: FitFlags): Promise<FitStatements> {
     ["--photon-energy", flags.photonEnergy, 1, 20000, "eV"],
     ["--bias", flags.bias, -1000, 1000, "V"],
     ["--temperature", flags.temperature, 0, 3000, "K"],
-    ["--acceptance", flags.acceptance, 0, 90, "degrees"],
+    ["--acceptance", flags.acceptance, 0, MOST_ACCEPTANCE_DEG, "degrees"],
     ["--fermi-level", flags.fermiLevel, -1000, 20000, "eV"],
     ["--resolution", flags.resolution, 1e-4, 10, "eV"],
     ["--bootstrap", flags.bootstrap, LEAST_REPLICATES, 1e6, "replicates"],

@@ -218,9 +218,15 @@ export function overridesOf(settings: RankedSetting["settings"]): string[] {
  * resolution needs unless the user gave the step.
  */
 async function loadWide(path: string, overrides: readonly string[]): Promise<LoadedScenario> {
-  const { cutoffEv, fermiLevelEv, photonEnergyEv, stepEv, resolutionFwhmEv } = planFacts(
-    (await loadScenario(path, overrides)).resolved,
-  );
+  const { resolved } = await loadScenario(path, overrides);
+  if (resolved.fast !== null) {
+    const rule = "the photon energy must be <= 60 eV, for both edges are needed";
+    throw new InputError([{
+      place: path,
+      message: cannot("plan", rule, `${Number(resolved.photonEnergyEv.toPrecision(6))} eV`),
+    }]);
+  }
+  const { cutoffEv, fermiLevelEv, photonEnergyEv, stepEv, resolutionFwhmEv } = planFacts(resolved);
   const isStepGiven = overrides.some((one) => one.startsWith("acquisition.stepEv="));
   const reach = Math.max(0, ...(nearestLine(photonEnergyEv)?.satellites ?? []).map(({ shiftEv }) => shiftEv));
   const startEv = Math.max(stepEv, Math.min(cutoffEv, fermiLevelEv) - BELOW_EV);

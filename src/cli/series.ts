@@ -129,15 +129,17 @@ const ANSWERS: Readonly<Record<SeriesKind, Answer>> = {
     const verdicts = [...result.curves, ...(result.line === null ? [] : [result.line])].map(({ verdict }) =>
       verdict
     );
-    const verdict = verdicts.includes("failed")
+    // Curves without a number are left out of the line, which is then to be looked at.
+    const verdict = verdicts.every((one) => one === "good")
+      ? "good"
+      : result.line === null && verdicts.includes("failed")
       ? "failed"
-      : verdicts.includes("doubtful")
-      ? "doubtful"
-      : "good";
+      : "doubtful";
     return {
       verdict,
       json: {
         verdict,
+        leftOut: result.leftOut,
         curves: result.curves.map(({ usedVoltagesV, fittedA: _, ...rest }) => ({
           ...rest,
           usedVoltagesV: [usedVoltagesV[0], usedVoltagesV[usedVoltagesV.length - 1]],
@@ -153,8 +155,12 @@ const ANSWERS: Readonly<Record<SeriesKind, Answer>> = {
           ...row("work function (collector)", fit.workFunctionEv, "eV"),
           ...row("work function (emitter)", fit.emitterWorkFunctionEv, "eV"),
           ...row("back-current", fit.backCurrentA, "A"),
+          `  fitted                        from ${fit.usedVoltagesV[0]} V on, below ${
+            Number((100 * fit.usedShare).toPrecision(2))
+          } % of the largest current`,
         ]),
         ...(result.line === null ? [] : ["All photon energies", ...lineLines(result.line)]),
+        ...result.leftOut.map(({ photonEnergyEv, reason }) => `Left out: ${photonEnergyEv} eV, as ${reason}`),
         `Used: ${cell.temperatureK} K, ${geometry}, dark current ${cell.darkCurrentA} A`,
       ],
       figure: {

@@ -1,7 +1,7 @@
 import { buildCommand } from "@stricli/core";
 import process from "node:process";
 import { HISTORIES_PER_BATCH } from "../transport/mod.ts";
-import { depthsSvg } from "./depths_svg.ts";
+import { depthsSvg, strongestLevels } from "./depths_svg.ts";
 import { stem, writeFiles } from "./files.ts";
 import { noticeText } from "./fit.ts";
 import {
@@ -135,12 +135,13 @@ export const simulateCommand = buildCommand({
     }
     const { result } = simulation;
     const spread = workFunctionsText(result.patches);
+    const edges = `  cutoff / Fermi edge        ${result.truth.cutoffEv.toFixed(3)} / ${
+      result.truth.fermiEdgeEv.toFixed(3)
+    } eV as recorded${spread && ", cutoff of that mean"}`;
     this.process.stdout.write([
       `${result.title}: ${result.histories} histories, scenario ${result.scenarioHash}`,
       `  work function put in       ${result.truth.workFunctionEv.toFixed(3)} eV${spread && `, ${spread}`}`,
-      `  cutoff / Fermi edge        ${result.truth.cutoffEv.toFixed(3)} / ${
-        result.truth.fermiEdgeEv.toFixed(3)
-      } eV as recorded${spread && ", cutoff of that mean"}`,
+      ...(simulation.resolved.fast === null ? [edges] : levelLines(simulation)),
       `  highest expected counts    ${result.peakCounts.toPrecision(4)} in a channel`,
       `  Monte Carlo standard error at most ${
         (100 * result.worstRelativeStandardError).toPrecision(2)
@@ -152,14 +153,34 @@ export const simulateCommand = buildCommand({
   },
 });
 
-function simulationPlot({ counts, expected, result }: Simulation): string {
+/** The core levels that give electrons, strongest first: under X-rays the window seldom holds an edge. */
+function levelLines({ expected }: Simulation): string[] {
+  const { shown, note } = strongestLevels(expected);
+  return [
+    ...shown.map(({ name, kineticEnergyEv, meanEscapeDepthNm }) =>
+      `  ${name.padEnd(26)} ${kineticEnergyEv.toFixed(3)} eV as recorded, mean escape depth ${
+        meanEscapeDepthNm.toFixed(2)
+      } nm`
+    ),
+    ...(shown.length === 0
+      ? ["  no core level gives electrons in the window"]
+      : note.map((line) => `  ${line}`)),
+  ];
+}
+
+function simulationPlot({ counts, expected, resolved, result }: Simulation): string {
   return terminalPlot({
     energiesEv: expected.kineticEnergiesEv,
     counts,
-    marks: [
-      { label: "secondary cutoff", energyEv: result.truth.cutoffEv },
-      { label: "Fermi edge", energyEv: result.truth.fermiEdgeEv },
-    ],
+    marks: resolved.fast === null
+      ? [
+        { label: "secondary cutoff", energyEv: result.truth.cutoffEv },
+        { label: "Fermi edge", energyEv: result.truth.fermiEdgeEv },
+      ]
+      : strongestLevels(expected).shown.map(({ name, kineticEnergyEv }) => ({
+        label: name,
+        energyEv: kineticEnergyEv,
+      })),
   });
 }
 

@@ -1,4 +1,4 @@
-import { cannot, InputError, suggest } from "../base/mod.ts";
+import { cannot, InputError, type Notice, suggest } from "../base/mod.ts";
 import { type BadChannels, badChannels, deadTimeCorrected, withoutBadChannels } from "./data_checks.ts";
 import type { Satellite } from "./satellites.ts";
 
@@ -78,6 +78,8 @@ export interface MeasureOptions {
 export type KineticRegion = EdgeRegion & {
   readonly photonEnergyEv: number;
   readonly photonFrom: string;
+  /** Photon energy that the file says, eV, or null. */
+  readonly readPhotonEnergyEv: number | null;
   readonly axisFrom: string;
   readonly fromBinding: boolean;
   readonly readRangeEv: readonly [number, number];
@@ -105,6 +107,10 @@ export interface CommonFacts {
 }
 
 const DEFAULT_TEMPERATURE_K = 300;
+/** No edge can be fitted in coarser steps, eV (chosen; edges of interest are below 0.5 eV wide). */
+const COARSEST_STEP_EV = 1;
+/** Values closer than this, in their units, are the same but for rounding. */
+const ROUNDING = 0.001;
 /** Photon energies above this are core-level work and are not picked without being named, eV. */
 const HIGHEST_ULTRAVIOLET_EV = 100;
 
@@ -137,7 +143,7 @@ export function chooseRegions(regions: readonly EdgeRegion[], options: MeasureOp
     const photonEnergyEv = options.photonEnergyEv ?? region.photonEnergyEv;
     if (photonEnergyEv === null) return [];
     const photonFrom = options.photonEnergyEv !== undefined ? "given by the user" : "file";
-    return [{ ...region, photonEnergyEv, photonFrom }];
+    return [{ ...region, photonEnergyEv, photonFrom, readPhotonEnergyEv: region.photonEnergyEv }];
   });
   if (lit.length === 0) {
     throw new InputError([{
@@ -160,7 +166,18 @@ export function chooseRegions(regions: readonly EdgeRegion[], options: MeasureOp
       ),
     }]);
   }
-  const chosen = lit.filter((region) => Math.abs(region.photonEnergyEv - lowest) < 0.01);
+  const lowestLit = lit.filter((region) => Math.abs(region.photonEnergyEv - lowest) < 0.01);
+  const chosen = lowestLit.filter((region) => !(stepOf(region) > COARSEST_STEP_EV));
+  if (chosen.length === 0) {
+    throw new InputError([{
+      place: lowestLit[0].file,
+      message: cannot(
+        "fit spectrum",
+        `the energy step must be <= ${COARSEST_STEP_EV} eV (too coarse for any edge; are the energies in eV?)`,
+        `${Number(stepOf(lowestLit[0]).toPrecision(6))} eV`,
+      ),
+    }]);
+  }
   const biases = [...new Set(chosen.map((region) => region.biasV))];
   if (biases.length > 1 && options.biasV === undefined) {
     throw new InputError([{
@@ -186,8 +203,13 @@ export function chooseRegions(regions: readonly EdgeRegion[], options: MeasureOp
   return kinetic;
 }
 
+/** Mean step of a region, eV. */
+function stepOf({ energiesEv }: EdgeRegion): number {
+  return Math.abs(energiesEv[energiesEv.length - 1] - energiesEv[0]) / (energiesEv.length - 1);
+}
+
 function ontoKineticAxis(
-  region: EdgeRegion & { photonEnergyEv: number; photonFrom: string },
+  region: EdgeRegion & Pick<KineticRegion, "photonEnergyEv" | "photonFrom" | "readPhotonEnergyEv">,
   options: MeasureOptions,
 ): KineticRegion {
   const kind = options.axis ?? region.energyKind;
@@ -222,6 +244,53 @@ function ontoKineticAxis(
       ? region.energiesEv.map((_, i) => region.photonEnergyEv - region.energiesEv[n - 1 - i])
       : region.energiesEv,
   };
+}
+
+/**
+ * Warnings for values that the user states and the files say otherwise.
+ *
+ * @param regions The chosen regions.
+ * @param options What the user states.
+ * @returns One warning for each value and each contradiction.
+ */
+export function overrides(regions: readonly KineticRegion[], options: MeasureOptions): Notice[] {
+  const values: readonly (readonly [
+    name: string,
+    unit: string,
+    given: number | undefined,
+    read: (region: KineticRegion) => number | null | undefined,
+  ])[] = [
+    ["photon energy", "eV", options.photonEnergyEv, (region) => region.readPhotonEnergyEv],
+    // Without a definition by the format the sign of a bias is the writer's.
+    [
+      "bias",
+      "V",
+      options.biasV,
+      ({ biasV, asRecorded }) =>
+        biasV === null || asRecorded || options.biasV === undefined
+          ? biasV
+          : Math.sign(options.biasV) * Math.abs(biasV),
+    ],
+    ["temperature", "K", options.temperatureK, (region) => region.temperatureK],
+    ["acceptance", "degrees", options.acceptanceHalfAngleDeg, (region) => region.acceptanceHalfAngleDeg],
+    ["resolution", "eV", options.resolutionFwhmEv, (region) => region.resolutionFwhmEv],
+  ];
+  const messages = regions.flatMap((region) => {
+    const { axis } = options;
+    const contradictions = values.flatMap(([name, unit, given, read]) => {
+      const said = read(region) ?? null;
+      return given === undefined || said === null || Math.abs(given - said) <= ROUNDING
+        ? []
+        : [`${name} ${given} ${unit} is used as stated, but the file says ${said} ${unit}`];
+    });
+    return axis === undefined || region.energyKind === "unknown" || axis === region.energyKind
+      ? contradictions
+      : [
+        ...contradictions,
+        `a ${axis} energy axis is used as stated, but the file says ${region.energyKind} energies`,
+      ];
+  });
+  return [...new Set(messages)].map((message) => ({ code: "overridden", message, place: "" }));
 }
 
 /**

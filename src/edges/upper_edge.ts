@@ -33,6 +33,17 @@ export function mainFalls(regions: readonly KineticRegion[], satellites: readonl
   return sharp.length > 0 ? sharp : fallsAt(SLOW_EV);
 }
 
+/** Falls this close below the highest one belong to the same edge, eV. */
+const SAME_EDGE_EV = 0.3;
+/** Where the axis does not put it, an edge wider than this and than the cutoff allows is no Fermi edge, eV (chosen). */
+const STRAY_SIGMA_EV = 0.08;
+const STRAY_WIDTH = 1.5;
+/**
+ * The step at a Fermi edge is most of the counts just below it; a straight leading edge has none there. Our own spectra
+ * give 0.9 and more for the one, 0.2 and less for the other (chosen).
+ */
+const STRAY_STEP_SHARE = 0.5;
+
 /** Mean counts over the half electronvolt below a fall. */
 export function levelBelow({ region, candidate }: Fall): number {
   return meanCounts(region.energiesEv, region.counts, candidate.energyEv - 0.5, candidate.energyEv - 0.1);
@@ -53,6 +64,30 @@ function isGhost(
       Math.abs(candidate.energyEv - other.energyEv - satellite.shiftEv) < GHOST_DISTANCE_EV
     ) && drop(candidate) < GHOST_SHARE * drop(other)
   );
+}
+
+/** Falls of the highest edge. */
+export function highestFalls(falls: readonly Fall[]): Fall[] {
+  const onset = Math.max(...falls.map(({ candidate }) => candidate.energyEv));
+  return falls.filter(({ candidate }) => candidate.energyEv > onset - SAME_EDGE_EV);
+}
+
+/**
+ * A Fermi edge at the end of the spectrum where no reading of the axis has one: it is as sharp as the cutoff and has the
+ * step of a metal, unlike the leading edge of a valence band.
+ */
+export function findStrayFermiEdge(
+  falls: readonly Fall[],
+  options: FermiOptions,
+): { edge: FittedFermiEdge; region: KineticRegion; reference: null } | null {
+  const found = findFermiEdge(highestFalls(falls), [], options);
+  if (found === null) return null;
+  const { edge, region } = found;
+  const { value } = edge.positionEv;
+  const drop = meanCounts(region.energiesEv, region.counts, value - 0.4, value - 0.2) -
+    meanCounts(region.energiesEv, region.counts, value + 0.2, value + 0.5);
+  const isSharp = edge.sigmaEv.value < Math.max(STRAY_SIGMA_EV, STRAY_WIDTH * options.startSigmaEv);
+  return isSharp && edge.stepCounts > STRAY_STEP_SHARE * drop ? { edge, region, reference: null } : null;
 }
 
 /** The first reading of the axis at which a Fermi edge really is. */

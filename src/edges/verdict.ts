@@ -1,11 +1,13 @@
 import type { Notice } from "../base/mod.ts";
 import type { FittedCutoff } from "./cutoff.ts";
 import type { BadChannels } from "./data_checks.ts";
+import type { EnergyReference } from "./energy_reference.ts";
 import type { FittedFermiEdge } from "./fermi.ts";
 import type { FittedEdge } from "./fitted_edge.ts";
 import { edgeCandidates, meanCounts } from "./locate.ts";
 import type { CommonFacts, KineticRegion } from "./regions.ts";
 import type { Verdict } from "./result.ts";
+import type { FittedValenceEdge } from "./valence.ts";
 
 /** Misfit that makes an edge doubtful: reduced chi-square and chance probability together. */
 const MISFIT_REDUCED = 2;
@@ -22,12 +24,18 @@ const DEAD_SHARE_DOUBTFUL = 0.2;
 const CHARGING_EV = 0.15;
 /** A Fermi edge this much wider than the known resolution suggests charging or a wrong temperature (chosen). */
 const CHARGING_WIDTH = 1.5;
+/** A stated resolution this much wider than an edge cannot be that of the measurement (chosen). */
+const TOO_WIDE = 1.25;
+/** Both scales of a valence-band maximum should agree to this, eV (chosen), and within three standard uncertainties. */
+const SCALES_EV = 0.3;
 /** On a kinetic axis an analyzer's own cutoff lies at its zero; a cutoff this close to it may be that one, eV. */
 const OWN_LIMIT_EV = 0.5;
 /** More failed replicates of a bootstrap than this share are too many (chosen). */
 const BOOTSTRAP_FAILURES = 0.05;
 /** An axis can be read in the wrong direction only where it is long enough to show both edges, eV. */
 const REVERSIBLE_EV = 5;
+
+const FWHM_PER_SIGMA = 2 * Math.sqrt(2 * Math.LN2);
 
 /** What speaks against an answer, collected on the way. */
 export class Findings {
@@ -131,6 +139,68 @@ export function judgeCutoff(
   }
 }
 
+/** No edge is sharper than the resolution. */
+export function judgeResolution(
+  name: string,
+  edge: FittedEdge | null,
+  { resolutionFwhmEv }: CommonFacts,
+  findings: Findings,
+): void {
+  if (edge === null || !edge.converged || resolutionFwhmEv === null) return;
+  const found = FWHM_PER_SIGMA * edge.sigmaEv.value;
+  const isWider = resolutionFwhmEv > TOO_WIDE * found &&
+    resolutionFwhmEv - found > 3 * FWHM_PER_SIGMA * edge.sigmaEv.standardUncertainty;
+  if (isWider) {
+    findings.doubt(
+      `the stated resolution of ${
+        (1000 * resolutionFwhmEv).toFixed(0)
+      } meV FWHM is wider than the ${name}, ` +
+        `${(1000 * found).toFixed(0)} meV: it is wrong, and uncertainties that rest on it are too small`,
+    );
+  }
+}
+
+/** A Fermi edge where the axis has none: the axis is not what it is said to be. */
+export function judgeStrayFermiEdge(
+  edge: FittedFermiEdge,
+  references: readonly EnergyReference[],
+  findings: Findings,
+): void {
+  const position = edge.positionEv.value;
+  const nearest = references.map(({ fermiLevelEv }) => position - fermiLevelEv)
+    .sort((a, b) => Math.abs(a) - Math.abs(b))[0];
+  findings.fail(
+    `a sharp edge like a Fermi edge lies ${Math.abs(nearest).toFixed(2)} eV ${
+      nearest < 0 ? "below" : "above"
+    } where the axis puts the Fermi level: the bias, the analyzer work function, the photon energy or the kind of ` +
+      "axis is wrong, or the sample charges or has no contact; if the edge is the Fermi edge, state its position " +
+      "with --fermi-level",
+  );
+}
+
+/** The two lines of a valence-band maximum. */
+export function judgeValenceScales(valence: FittedValenceEdge, gain: number, findings: Findings): void {
+  const { positionEv, lineUncertaintyEv, logarithmicEv } = valence;
+  if (logarithmicEv === null || !valence.converged) return;
+  const difference = Math.abs(logarithmicEv.value - positionEv.value) / gain;
+  const uncertainty = Math.hypot(
+    positionEv.standardUncertainty,
+    lineUncertaintyEv,
+    logarithmicEv.standardUncertainty,
+  ) / gain;
+  if (difference > SCALES_EV && difference > 3 * uncertainty) {
+    findings.doubt(
+      `the valence-band maxima on a linear and on a logarithmic scale lie ${
+        difference.toFixed(2)
+      } eV apart, ` +
+        `${
+          (difference / uncertainty).toFixed(0)
+        } standard uncertainties: states in the gap, or a leading edge that ` +
+        "is not straight; say which one you quote",
+    );
+  }
+}
+
 /** What a Fermi edge says about charging. */
 export function judgeFermiEdge(
   edge: FittedFermiEdge,
@@ -155,7 +225,7 @@ export function judgeFermiEdge(
     );
   }
   if (facts.resolutionFwhmEv !== null) {
-    const known = facts.resolutionFwhmEv / (2 * Math.sqrt(2 * Math.LN2));
+    const known = facts.resolutionFwhmEv / FWHM_PER_SIGMA;
     const { value, standardUncertainty } = edge.sigmaEv;
     if (value > CHARGING_WIDTH * known && value - known > 3 * standardUncertainty) {
       findings.doubt(

@@ -13,12 +13,29 @@ import {
   commonFacts,
   type EdgeRegion,
   type MeasureOptions,
+  overrides,
   type ScaleGain,
 } from "./regions.ts";
 import type { WorkFunctionResult } from "./result.ts";
-import { findFermiEdge, levelBelow, mainFalls, omittedSatelliteShiftEv } from "./upper_edge.ts";
+import {
+  findFermiEdge,
+  findStrayFermiEdge,
+  highestFalls,
+  levelBelow,
+  mainFalls,
+  omittedSatelliteShiftEv,
+} from "./upper_edge.ts";
 import { fitValenceEdge } from "./valence.ts";
-import { Findings, judgeData, judgeEdge, judgeFermiEdge, looksReversed } from "./verdict.ts";
+import {
+  Findings,
+  judgeData,
+  judgeEdge,
+  judgeFermiEdge,
+  judgeResolution,
+  judgeStrayFermiEdge,
+  judgeValenceScales,
+  looksReversed,
+} from "./verdict.ts";
 
 /** Conventions further apart than this are worth a word, eV (chosen: half of what laboratories differ by). */
 const CONVENTION_SPREAD_EV = 0.05;
@@ -69,15 +86,17 @@ export function measureWorkFunction(
     onset,
   );
   const intervals = intervalOptions(options, 1);
-  const fermi = findFermiEdge(falls, references, {
+  const fermiOptions = {
     thermalEnergyEv: BOLTZMANN_EV_PER_K * facts.temperatureK,
     satellites,
     startSigmaEv: Math.min(0.15, cutoff?.sigmaEv.value ?? 0.05),
     intervals,
-  });
+  };
+  const expectedFermi = findFermiEdge(falls, references, fermiOptions);
+  const strayFermi = expectedFermi === null ? findStrayFermiEdge(falls, fermiOptions) : null;
+  const fermi = expectedFermi ?? strayFermi;
   const reference = fermi?.reference ?? (references.length === 1 ? references[0] : null);
-  const highest = falls.filter((fall) => onset !== null && fall.candidate.energyEv > onset - 0.3)
-    .sort((a, b) => levelBelow(b) - levelBelow(a))[0];
+  const highest = highestFalls(falls).sort((a, b) => levelBelow(b) - levelBelow(a))[0];
   const valence = fermi === null && highest !== undefined
     ? fitValenceEdge(
       highest.region.energiesEv,
@@ -108,7 +127,11 @@ export function measureWorkFunction(
         `try --axis ${fromBinding ? "kinetic" : "binding"}`,
     );
   }
-  if (fermi !== null) {
+  judgeResolution("secondary cutoff", cutoff, facts, findings);
+  if (strayFermi !== null) {
+    judgeStrayFermiEdge(strayFermi.edge, references, findings);
+  } else if (fermi !== null) {
+    judgeResolution("Fermi edge", fermi.edge, facts, findings);
     const omitted = fermi.edge.withSatellites
       ? 0
       : omittedSatelliteShiftEv(fermi.edge, fermi.region, satellites);
@@ -182,7 +205,13 @@ export function measureWorkFunction(
     );
   }
   const valenceUncertainty = combined(budget, "valenceBandMaximumEv", valenceMaximum).standardUncertainty;
-  if (valence !== null && !findings.failed && valenceMaximum < 2 * valenceUncertainty) {
+  if (valence !== null && !findings.failed && valenceMaximum < -2 * valenceUncertainty) {
+    findings.fail(
+      `the valence-band maximum would lie ${
+        (-valenceMaximum).toFixed(3)
+      } eV above the Fermi level: photon energy, bias, analyzer work function or --fermi-level is wrong, or the sample charges`,
+    );
+  } else if (valence !== null && !findings.failed && valenceMaximum < 2 * valenceUncertainty) {
     findings.doubt(
       `the valence-band maximum would lie ${
         valenceMaximum.toFixed(3)
@@ -197,6 +226,7 @@ export function measureWorkFunction(
     (fermiLevelEv - logarithmicEv.value) / gain.value,
   );
   if (valence !== null) {
+    judgeValenceScales(valence, gain.value, findings);
     findings.warn(
       "no-fermi-edge",
       "no Fermi edge in the data: the leading edge is taken for a valence-band maximum (straight line, linear scale)",
@@ -255,6 +285,7 @@ export function measureWorkFunction(
       "the gain of the energy scale is not known and not part of the uncertainty",
     );
   }
+  for (const notice of overrides(chosen, options)) findings.warnings.push(notice);
   const { failed } = findings;
   const answer = <T>(value: T): T | null => failed ? null : value;
   const expanded = (quantity: Quantity) => [quantity, expandedUncertainty(budget, quantity)] as const;

@@ -1,6 +1,6 @@
 import { parse } from "csv-parse/sync";
 import { cannot, InputError, suggest } from "../base/mod.ts";
-import { headLines, headReader, type ProblemList, problemList, type RegionFacts } from "./head.ts";
+import { headLines, headReader, keyLine, type ProblemList, problemList, type RegionFacts } from "./head.ts";
 import {
   ascending,
   energyKindOf,
@@ -302,7 +302,7 @@ export function writeSpectrumCsv(
     if (/[\r\n]/.test(value)) {
       throw new RangeError(cannot(`write "${key}"`, "its value must be one line", value));
     }
-    return `# ${key}: ${value}`.trimEnd();
+    return keyLine(key, value);
   });
   const rowCount = columns[0].values.length;
   for (const { name, values, mayBeUnknown = false } of columns) {

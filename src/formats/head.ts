@@ -1,4 +1,4 @@
-import { cannot, InputError, type Problem } from "../base/mod.ts";
+import { cannot, editDistance, InputError, type Problem } from "../base/mod.ts";
 import type { SpectrumRegion } from "./region.ts";
 import { numberRule } from "./text.ts";
 
@@ -30,6 +30,33 @@ const FIELD_KEYS = [
   "sweeps",
 ];
 
+/** Keys with a meaning: those of fields, those with a rule, and metadata that a fit reads. */
+const KNOWN_KEYS = [
+  ...new Set([
+    ...FIELD_KEYS,
+    ...Object.keys(NUMERIC_KEYS),
+    "resolution_fwhm_ev",
+    "dead_time_s",
+    "simulated",
+  ]),
+];
+/** From this length on a key with two wrong letters is taken for a misspelled one (chosen). */
+const LONG_KEY = 10;
+
+/**
+ * The known key that another one probably was meant to be, or undefined: one letter wrong, missing or too much, two
+ * exchanged, or any two of a long key. Numbers behind it, as in `bias_v (2)`, are further away.
+ */
+function misspelled(key: string): string | undefined {
+  const word = key.toLowerCase();
+  const letters = (text: string): string => [...text].sort().join("");
+  return KNOWN_KEYS.includes(word) ? undefined : KNOWN_KEYS.find((known) => {
+    const distance = editDistance(word, known);
+    return distance <= 1 ||
+      (distance === 2 && (known.length >= LONG_KEY || letters(word) === letters(known)));
+  });
+}
+
 /** Entries as metadata: a key that is a field's or that differs from another in case only gets a number behind it. */
 export function metadataOf(entries: Iterable<readonly [string, string]>): Record<string, string> {
   const taken = new Set(FIELD_KEYS);
@@ -57,9 +84,9 @@ export function keyedValue(content: string): readonly [key: string, value: strin
   return keyed === null ? undefined : [keyed[1], keyed[2] ?? ""];
 }
 
-/** A key and a value as the line that {@link HeadReader} reads. */
+/** A key and a value as the line that {@link HeadReader} reads; in quotes where the key alone would be misread. */
 export function keyLine(key: string, value: string): string {
-  const name = /^["#]|:/.test(key) ? JSON.stringify(key) : key;
+  const name = /^["#]|:/.test(key) || misspelled(key) !== undefined ? JSON.stringify(key) : key;
   return `# ${name}: ${value}`.trimEnd();
 }
 
@@ -130,6 +157,15 @@ export function headReader(problems: ProblemList): HeadReader {
       }
       const [key, value] = keyed;
       const known = key.toLowerCase();
+      const meant = content.startsWith('"') ? undefined : misspelled(key);
+      if (meant !== undefined) {
+        problems.add(
+          lineNumber,
+          "read the key",
+          `it must be a known one (did you mean ${meant}?) or stand in quotes if it is meant as it is`,
+          key,
+        );
+      }
       if (seen.has(known)) {
         problems.add(lineNumber, `read "${key}"`, "every key must be given once", content);
       }

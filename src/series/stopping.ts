@@ -1,6 +1,6 @@
 import { cannot, type Estimate } from "../base/mod.ts";
 import { fowlerYieldEv2, sphereRetardedYieldEv2 } from "../emission/mod.ts";
-import { minimize } from "../fit/mod.ts";
+import { chiSquareProbability, type FitResult, minimize } from "../fit/mod.ts";
 import { judgeFit, type Judgment } from "./judgment.ts";
 import { fitPhotoelectricLine, type PhotoelectricLine, PLANCK_EV_S } from "./photoelectric_line.ts";
 
@@ -45,6 +45,8 @@ export interface StoppingPotential extends Judgment {
   readonly emitterWorkFunctionEv: Estimate | null;
   /** Current from collector to emitter at strong retarding, A, dark current excluded; null when the fit failed. */
   readonly backCurrentA: Estimate | null;
+  /** Share of the largest current from which on the readings were fitted: 1/2, 1/4, 1/8, ... */
+  readonly usedShare: number;
   /** Voltages that were fitted, V. */
   readonly usedVoltagesV: Float64Array;
   /** Fitted currents there, dark current included, A. */
@@ -55,6 +57,8 @@ export interface StoppingPotential extends Judgment {
 export interface StoppingSeries {
   /** One result a curve. */
   readonly curves: readonly StoppingPotential[];
+  /** Curves that give no stopping potential, and why. */
+  readonly leftOut: readonly { readonly photonEnergyEv: number; readonly reason: string }[];
   /** Line through the stopping potentials; null with fewer than 3 of them. */
   readonly line: PhotoelectricLine | null;
 }
@@ -63,7 +67,17 @@ export interface StoppingSeries {
  * Largest part of a curve that is fitted, as a share of its current above the last readings. Further up the contact
  * potential and the shape of the cell end the formula.
  */
-const USED_SHARE = 0.5;
+const LARGEST_SHARE = 0.5;
+/** Smaller parts are noise (chosen). */
+const SMALLEST_SHARE = 1e-4;
+/** A part whose chi-square is less probable than this is too large: the density of states is not flat over it (chosen). */
+const LEAST_PROBABILITY = 0.01;
+/** Chi-square per degree of freedom at which even the best part says nothing (chosen). */
+const LARGEST_REDUCED_CHI_SQUARE = 10;
+/** Readings that a part has at least. */
+const FEWEST_READINGS = 6;
+/** Readings below the stopping potential that fix it and the amplitude. */
+const FEWEST_BELOW = 4;
 /** Readings beyond the stopping potential that fix the back-current. */
 const FEWEST_BEYOND = 3;
 
@@ -71,8 +85,14 @@ const FEWEST_BEYOND = 3;
  * Stopping potential from a curve of current against retarding voltage.
  *
  * Fits DuBridge's current plus a constant, the back-current, to the readings from the voltage on at which the current
- * last exceeds half of its largest value above the last readings (`usedVoltagesV` tells which). The back-current of
- * electrons that the light frees from the collector is constant there since the field helps every one of them over.
+ * last exceeds a share of its largest value above the last readings. The back-current of electrons that the light frees
+ * from the collector is constant there since the field helps every one of them over.
+ *
+ * The formula holds near the stopping potential, where the emitter's density of states is flat. So the share begins at
+ * 1/2 and is halved until chi-square is within chance (probability 1 %); a part that had to shrink is halved once more
+ * where that passes too, as what has just passed may still bend. A part has at least 6 readings, 4 of them below the
+ * stopping potential. Where none passes the one with the least chi-square per degree of freedom is taken, and above 10
+ * the fit has failed. `usedShare` and `usedVoltagesV` tell what was fitted.
  *
  * Source: L. A. DuBridge, Phys. Rev. 43, 727 (1933).
  *
@@ -84,46 +104,17 @@ const FEWEST_BEYOND = 3;
 export function fitStoppingPotential(curve: RetardingCurve, cell: RetardingCell): StoppingPotential {
   check(curve, cell);
   const { photonEnergyEv } = curve;
-  const { temperatureK, geometry, contactPotentialV } = cell;
-  const all = Float64Array.from(curve.currentsA, (current) => current - cell.darkCurrentA);
-  const floor = all.slice(-3).reduce((a, b) => a + b, 0) / 3;
-  const height = Math.max(...all) - floor;
-  const from = all.findLastIndex((current) => current - floor > USED_SHARE * height);
-  const voltages = Float64Array.from(curve.retardingVoltagesV).slice(from);
-  const data = all.slice(from);
-  if (data.length < 6) {
-    throw fail("there must be at least 6 readings from half of the largest current on", data.length);
+  const { contactPotentialV } = cell;
+  const tried: Part[] = [];
+  for (const part of shrinkingParts(curve, cell)) {
+    tried.push(part);
+    const first = tried.findIndex(passes);
+    if (first === 0 || (first > 0 && tried.length > first + 1)) break;
   }
-  const contactV = contactPotentialV?.value ?? 0;
-  const shape = (voltageV: number, stopV: number): number => {
-    // For plates only the energy left at the collector counts; a sphere also needs the energy outside the emitter.
-    if (geometry === "plane") return fowlerYieldEv2(stopV, voltageV, temperatureK);
-    return sphereRetardedYieldEv2(voltageV + contactV, stopV + contactV, temperatureK);
-  };
-  const start = stopStart(voltages, data, floor);
-  const unit = shape(voltages[0], start);
-  const fit = minimize({
-    parameters: [
-      { name: "stopping potential", start, scale: 0.1 },
-      { name: "amplitude", start: unit > 0 ? (data[0] - floor) / unit : height },
-      { name: "baseline", start: floor, scale: height },
-    ],
-    model: ([stopV, amplitude, baseline], out) => {
-      for (let i = 0; i < out.length; i++) out[i] = baseline + amplitude * shape(voltages[i], stopV);
-    },
-    data,
-    sigma: Float64Array.from(curve.currentUncertaintiesA).slice(from),
-  });
+  const { usedShare, voltages, data, fit } = bestPart(tried);
   const [stopV, , baseline] = fit.values;
   const beyond = voltages.filter((voltage) => voltage > stopV).length;
-  const judgment = judgeFit(
-    fit,
-    data,
-    beyond >= FEWEST_BEYOND ? [] : [
-      `only ${beyond} readings lie beyond the stopping potential, which leaves the back-current open; measure ` +
-      "further",
-    ],
-  );
+  const judgment = judge(fit, data, beyond);
   const isGood = judgment.verdict !== "failed";
   const estimate = (value: number, index: number): Estimate | null =>
     isGood ? { value, standardUncertainty: fit.standardErrors[index] * judgment.inflation } : null;
@@ -142,6 +133,7 @@ export function fitStoppingPotential(curve: RetardingCurve, cell: RetardingCell)
       ),
     },
     backCurrentA: estimate(-baseline, 2),
+    usedShare,
     usedVoltagesV: voltages,
     fittedA: fit.fitted.map((current) => current + cell.darkCurrentA),
   };
@@ -162,6 +154,9 @@ export function fitStoppingSeries(curves: readonly RetardingCurve[], cell: Retar
   );
   return {
     curves: fits,
+    leftOut: fits.flatMap(({ photonEnergyEv, stoppingPotentialV, reasons }) =>
+      stoppingPotentialV === null ? [{ photonEnergyEv, reason: reasons[0] }] : []
+    ),
     line: known.length < 3 ? null : fitPhotoelectricLine({
       frequenciesHz: known.map(({ frequencyHz }) => frequencyHz),
       frequencyUncertaintiesHz: known.map(() => 0),
@@ -170,6 +165,93 @@ export function fitStoppingSeries(curves: readonly RetardingCurve[], cell: Retar
       quantity: "stopping potential",
     }),
   };
+}
+
+/** The end of a curve, fitted. */
+interface Part {
+  readonly usedShare: number;
+  readonly voltages: Float64Array;
+  readonly data: Float64Array;
+  readonly fit: FitResult;
+}
+
+/** Fits half of a curve, a quarter and so on, as long as a part has the readings for it; at least the first. */
+function* shrinkingParts(curve: RetardingCurve, cell: RetardingCell): Generator<Part> {
+  const { temperatureK, geometry, contactPotentialV } = cell;
+  const contactV = contactPotentialV?.value ?? 0;
+  const shape = (voltageV: number, stopV: number): number => {
+    // For plates only the energy left at the collector counts; a sphere also needs the energy outside the emitter.
+    if (geometry === "plane") return fowlerYieldEv2(stopV, voltageV, temperatureK);
+    return sphereRetardedYieldEv2(voltageV + contactV, stopV + contactV, temperatureK);
+  };
+  const all = Float64Array.from(curve.currentsA, (current) => current - cell.darkCurrentA);
+  const floor = all.slice(-3).reduce((a, b) => a + b, 0) / 3;
+  const height = Math.max(...all) - floor;
+  let previous: number | null = null;
+  for (let usedShare = LARGEST_SHARE; usedShare > SMALLEST_SHARE; usedShare /= 2) {
+    const from = all.findLastIndex((current) => current - floor > usedShare * height);
+    if (from === previous) continue;
+    const data = all.slice(from);
+    if (data.length < FEWEST_READINGS) {
+      if (previous !== null) return;
+      throw fail(
+        `there must be at least ${FEWEST_READINGS} readings from half of the largest current on`,
+        data.length,
+      );
+    }
+    const voltages = Float64Array.from(curve.retardingVoltagesV).slice(from);
+    const start = stopStart(voltages, data, floor);
+    const unit = shape(voltages[0], start);
+    const fit = minimize({
+      parameters: [
+        { name: "stopping potential", start, scale: 0.1 },
+        { name: "amplitude", start: unit > 0 ? (data[0] - floor) / unit : height },
+        { name: "baseline", start: floor, scale: height },
+      ],
+      model: ([stopV, amplitude, baseline], out) => {
+        for (let i = 0; i < out.length; i++) out[i] = baseline + amplitude * shape(voltages[i], stopV);
+      },
+      data,
+      sigma: Float64Array.from(curve.currentUncertaintiesA).slice(from),
+    });
+    const isUsable = fit.converged && voltages[FEWEST_BELOW - 1] < fit.values[0];
+    if (!isUsable && previous !== null) return;
+    yield { usedShare, voltages, data, fit };
+    if (!isUsable) return;
+    previous = from;
+  }
+}
+
+function passes({ fit }: Part): boolean {
+  return fit.converged && chiSquareProbability(fit.chiSquare, fit.degreesOfFreedom) >= LEAST_PROBABILITY;
+}
+
+/** The largest part that passes, or where that had to shrink the next one if it passes too; else the least bad one. */
+function bestPart(parts: readonly Part[]): Part {
+  const first = parts.findIndex(passes);
+  if (first < 0) return parts.reduce((a, b) => reducedChiSquare(b.fit) < reducedChiSquare(a.fit) ? b : a);
+  const next = parts[first + 1];
+  return first > 0 && next !== undefined && passes(next) ? next : parts[first];
+}
+
+function reducedChiSquare({ chiSquare, degreesOfFreedom }: FitResult): number {
+  return chiSquare / degreesOfFreedom;
+}
+
+function judge(fit: FitResult, data: Float64Array, beyond: number): Judgment {
+  const judgment = judgeFit(fit, data, [
+    ...(beyond >= FEWEST_BEYOND ? [] : [
+      `only ${beyond} readings lie beyond the stopping potential, which leaves the back-current open; measure ` +
+      "further",
+    ]),
+  ]);
+  if (reducedChiSquare(fit) <= LARGEST_REDUCED_CHI_SQUARE) return judgment;
+  const reason =
+    `chi-square per degree of freedom is ${
+      reducedChiSquare(fit).toPrecision(3)
+    }, above ${LARGEST_REDUCED_CHI_SQUARE}, in every part of the curve down to the stopping potential: the formula does not ` +
+    "hold there, or there are too few readings near it; measure in smaller steps";
+  return { ...judgment, verdict: "failed", reasons: [reason] };
 }
 
 /** Where the root of the current, a straight line for plates, meets zero: through its first point and a quarter of it. */

@@ -195,6 +195,13 @@ export function historyRunner(
   const { layers, transfers, topsNm, topPaths, pathNm, pathsPerNm } = stack;
   const { vacuumBin, stepEv, count } = stack.grid;
   const { cells } = parts[0].detection;
+  const {
+    bins: startBins,
+    layers: startLayers,
+    topsNm: startTopsNm,
+    depthsNm: startDepthsNm,
+    spans: startSpans,
+  } = source;
   const outcomes = source.table.length;
   const partTable = new Uint32Array(parts.length);
   writeAliasRow(parts.map((part) => part.share), partTable, 0);
@@ -226,8 +233,12 @@ export function historyRunner(
         let layer = stackLayers[pending];
         let turns = 0;
         while (bin >= vacuumBin) {
-          let row = layer * count + bin;
-          let paths = topPaths[row] + (depthNm - topsNm[layer]) * pathsPerNm[row];
+          let row = bin;
+          let paths = depthNm * pathsPerNm[bin];
+          if (layers > 1) {
+            row = layer * count + bin;
+            paths = topPaths[row] + (depthNm - topsNm[layer]) * pathsPerNm[row];
+          }
           if (scattered) {
             const cell = paths * DEPTH_CELLS_PER_PATH;
             if (cell < cells) forced[bin] += probability[(bin - vacuumBin) * cells + (cell | 0)];
@@ -253,8 +264,8 @@ export function historyRunner(
               layer++;
               row += count;
             }
-          }
-          depthNm = topsNm[layer] + (paths - topPaths[row]) * pathNm[row];
+            depthNm = topsNm[layer] + (paths - topPaths[row]) * pathNm[row];
+          } else depthNm = paths * pathNm[bin];
           // An infinite path (no event possible) that did not leave has gone for good; the negation also stops NaN.
           if (!(depthNm < Infinity)) break;
 

@@ -115,6 +115,66 @@ Deno.test("fitStoppingSeries() draws Einstein's line through the curves of one c
   assert.equal(fitStoppingSeries([curve(5, normal, "plane")], CELL).line, null);
 });
 
+/** A curve with electrons from a narrow band `belowFermiEv` deep, on top of those of {@link curve}. */
+function withBand(whole: RetardingCurve, belowFermiEv: number): RetardingCurve {
+  const top = whole.photonEnergyEv - COLLECTOR_EV - belowFermiEv;
+  return {
+    ...whole,
+    currentsA: Array.from(
+      whole.currentsA,
+      (current, i) => current + 3e-10 * Math.max(0, top - whole.retardingVoltagesV[i]),
+    ),
+  };
+}
+
+Deno.test("fitStoppingPotential() fits only what lies above a band that the formula does not know", () => {
+  // 100 replicates; false alarm: see pullsAreNormal().
+  const normal = normalDraws(34);
+  const fits = Array.from(
+    { length: 100 },
+    () => fitStoppingPotential(withBand(curve(5.5, normal, "plane"), 1), CELL),
+  );
+  const shifts = fits.map(({ workFunctionEv }) =>
+    (workFunctionEv!.value - COLLECTOR_EV) / workFunctionEv!.standardUncertainty
+  );
+  assert.ok(pullsAreNormal(shifts), "work function");
+  assert.ok(!pullsAreNormal(shifts.map((pull) => pull + 1)), "one uncertainty off");
+  for (const { usedShare, usedVoltagesV, verdict } of fits) {
+    assert.ok(usedShare <= 1 / 4 && usedVoltagesV[0] > 5.5 - COLLECTOR_EV - 1.3, `${usedShare} ${verdict}`);
+  }
+});
+
+Deno.test("fitStoppingPotential() gives no number for an ohmic leak, and the series leaves it out with a reason", () => {
+  const good = [4.0, 4.9, 5.5].map((energy) => curve(energy, normalDraws(35), "plane"));
+  const whole = curve(6.2, normalDraws(36), "plane");
+  const leaking: RetardingCurve = {
+    ...whole,
+    currentsA: Array.from(
+      whole.currentsA,
+      (current, i) => current - 3e-11 * (whole.retardingVoltagesV[i] - whole.retardingVoltagesV[0]) ** 2,
+    ),
+  };
+  const { curves, leftOut, line } = fitStoppingSeries([...good, leaking], CELL);
+  assert.deepEqual(curves.map(({ verdict }) => verdict === "failed"), [false, false, false, true]);
+  assert.deepEqual([curves[3].stoppingPotentialV, curves[3].workFunctionEv, curves[3].backCurrentA], [
+    null,
+    null,
+    null,
+  ]);
+  assert.equal(leftOut.length, 1);
+  assert.equal(leftOut[0].photonEnergyEv, 6.2);
+  assert.match(leftOut[0].reason, /^chi-square per degree of freedom is [\d.e+]+, above 10, in every part/);
+  assert.deepEqual(line, fitStoppingSeries(good, CELL).line);
+});
+
+Deno.test("fitStoppingPotential() ends when a curve holds no electrons", () => {
+  const flat = { ...curve(5.5, () => 0, "plane"), currentsA: new Array(60).fill(1e-13) };
+  assert.throws(
+    () => fitStoppingPotential(flat, CELL),
+    /at least 6 readings from half of the largest current on/,
+  );
+});
+
 Deno.test("fitStoppingPotential() refuses what it cannot use", () => {
   const good = curve(5.5, () => 0, "plane");
   const cases: [Partial<RetardingCurve>, Partial<RetardingCell>, RegExp][] = [
