@@ -49,7 +49,14 @@ const application = buildApplication<Context>(
   {
     name: "twoedge",
     versionInfo: { currentVersion: VERSION },
-    scanner: { caseStyle: "allow-kebab-for-camel" },
+    scanner: {
+      caseStyle: "allow-kebab-for-camel",
+      // Letters left out cost little, wrong ones much: a beginning finds its flag, another word none.
+      distanceOptions: {
+        threshold: 7,
+        weights: { insertion: 1, deletion: 4, substitution: 4, transposition: 1 },
+      },
+    },
     documentation: { disableAnsiColor: true },
     determineExitCode: exitCodeOf,
     localization: { text: { ...text_en, exceptionWhileRunningCommand: errorText } },

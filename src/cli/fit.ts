@@ -25,6 +25,8 @@ export interface FitRun {
   readonly regions: readonly EdgeRegion[];
   /** `true` when every region says that it was simulated. */
   readonly simulated: boolean;
+  /** Titles that the files give (metadata `title`), each once, joined by commas; empty unless every region has one. */
+  readonly title: string;
   /** The answer. */
   readonly result: WorkFunctionResult;
 }
@@ -39,15 +41,19 @@ export interface FitRun {
 export async function fitFiles(paths: readonly string[], statements: FitStatements): Promise<FitRun> {
   const { columns, ...options } = statements;
   const regions: EdgeRegion[] = [];
+  const titles: string[] = [];
   let simulated = true;
   for (const path of paths) {
     const file = await readSpectrumFile(await readBytes(path), path, columns ? { columns } : {});
     for (const region of file.regions) {
       regions.push(edgeRegion(region, path));
+      titles.push(region.metadata.title ?? "");
       simulated &&= region.metadata.simulated === "true";
     }
   }
-  return { regions, simulated, result: measureWorkFunction(regions, { ...options, knownLine: nearestLine }) };
+  const title = titles.includes("") ? "" : [...new Set(titles)].join(", ");
+  const result = measureWorkFunction(regions, { ...options, knownLine: nearestLine });
+  return { regions, simulated, title, result };
 }
 
 /** What a fit needs of a region, with the facts that are metadata in the file. */

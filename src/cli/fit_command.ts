@@ -166,7 +166,7 @@ export const fitCommand = buildCommand({
     if (flags.out !== undefined) {
       const written = await writeFiles(flags.out, [
         ["fit.json", json],
-        ["fit.svg", await fitSvg(run, paths.map(stem).join(", "))],
+        ["fit.svg", await fitSvg(run, run.title || paths.map(stem).join(", "))],
       ]);
       if (!flags.json) this.process.stdout.write(`Wrote ${written.join(", ")}\n`);
     }

@@ -72,11 +72,16 @@ export class Findings {
   }
 }
 
+/** `true` when a model does not describe an edge. */
+export function isMisfit({ tests }: FittedEdge): boolean {
+  return tests.reducedChiSquare > MISFIT_REDUCED && tests.chiSquareProbability < MISFIT_PROBABILITY;
+}
+
 /** Convergence, misfit, order of the residuals, channels on the edge, bootstrap. */
 export function judgeEdge(name: string, edge: FittedEdge, findings: Findings): void {
   if (!edge.converged) return findings.fail(`the fit of the ${name} did not converge: ${edge.reason}`);
-  const { reducedChiSquare, chiSquareProbability, runs } = edge.tests;
-  if (reducedChiSquare > MISFIT_REDUCED && chiSquareProbability < MISFIT_PROBABILITY) {
+  const { reducedChiSquare, runs } = edge.tests;
+  if (isMisfit(edge)) {
     findings.doubt(
       `the model does not describe the ${name}: chi-square is ${reducedChiSquare.toFixed(1)} per degree of ` +
         "freedom; its uncertainty is enlarged, look at the residuals",
@@ -160,7 +165,7 @@ export function judgeResolution(
   }
 }
 
-/** A Fermi edge where the axis has none: the axis is not what it is said to be. */
+/** A Fermi edge where the axis has none: the axis is not what it is said to be, unless the edge is a narrow band's. */
 export function judgeStrayFermiEdge(
   edge: FittedFermiEdge,
   references: readonly EnergyReference[],
@@ -169,13 +174,14 @@ export function judgeStrayFermiEdge(
   const position = edge.positionEv.value;
   const nearest = references.map(({ fermiLevelEv }) => position - fermiLevelEv)
     .sort((a, b) => Math.abs(a) - Math.abs(b))[0];
-  findings.fail(
+  const message =
     `a sharp edge like a Fermi edge lies ${Math.abs(nearest).toFixed(2)} eV ${
       nearest < 0 ? "below" : "above"
     } where the axis puts the Fermi level: the bias, the analyzer work function, the photon energy or the kind of ` +
-      "axis is wrong, or the sample charges or has no contact; if the edge is the Fermi edge, state its position " +
-      "with --fermi-level",
-  );
+    "axis is wrong, or the sample charges or has no contact; if the edge is the Fermi edge, state its position " +
+    "with --fermi-level";
+  if (isMisfit(edge)) findings.doubt(`${message}; if it is not, it is a narrow band`);
+  else findings.fail(message);
 }
 
 /** The two lines of a valence-band maximum. */

@@ -28,6 +28,7 @@ import {
 import { fitValenceEdge } from "./valence.ts";
 import {
   Findings,
+  isMisfit,
   judgeData,
   judgeEdge,
   judgeFermiEdge,
@@ -94,7 +95,8 @@ export function measureWorkFunction(
   };
   const expectedFermi = findFermiEdge(falls, references, fermiOptions);
   const strayFermi = expectedFermi === null ? findStrayFermiEdge(falls, fermiOptions) : null;
-  const fermi = expectedFermi ?? strayFermi;
+  // One that the model does not describe may be a narrow band after all: that reading stays, with a doubt.
+  const fermi = expectedFermi ?? (strayFermi === null || isMisfit(strayFermi.edge) ? null : strayFermi);
   const reference = fermi?.reference ?? (references.length === 1 ? references[0] : null);
   const highest = highestFalls(falls).sort((a, b) => levelBelow(b) - levelBelow(a))[0];
   const valence = fermi === null && highest !== undefined

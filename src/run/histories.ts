@@ -1,17 +1,14 @@
 import { Worker } from "node:worker_threads";
 import { type EngineData, engineFrom } from "../transport/mod.ts";
-import {
-  type BatchTally,
-  emptyBatchTally,
-  HISTORIES_PER_BATCH,
-  type Tally,
-  TallyAccumulator,
-} from "../transport/mod.ts";
+import { emptyBatchTally, HISTORIES_PER_BATCH, type Tally, TallyAccumulator } from "../transport/mod.ts";
 import { moduleBeside } from "./module_url.ts";
 import type { FromWorker, ToWorker } from "./worker.ts";
 
 /** Batches handed to a worker at a time: some milliseconds of work, so that stopping and progress feel immediate. */
 const BATCHES_PER_TASK = 8;
+
+/** Tasks that a worker holds: the one it runs and one more. */
+const TASKS_AHEAD = 2;
 
 /** How a run is spread and watched. */
 export interface RunOptions {
@@ -119,21 +116,26 @@ export class HistoryPool {
     try {
       await Promise.all(this.#workers.map((worker) =>
         new Promise<void>((finish, fail) => {
+          let waiting = 0;
           const nextTask = (): void => {
-            if (next >= batches || Atomics.load(this.#stop, 0) === 1) return finish();
-            const from = next;
-            next = Math.min(batches, next + BATCHES_PER_TASK);
-            tell(worker, { kind: "run", from, to: next });
+            if (next < batches && Atomics.load(this.#stop, 0) === 0) {
+              const from = next;
+              next = Math.min(batches, next + BATCHES_PER_TASK);
+              waiting++;
+              tell(worker, { kind: "run", from, to: next });
+            } else if (waiting === 0) finish();
           };
           worker.removeAllListeners("error").removeAllListeners("message");
           worker.on("error", fail);
           worker.on("message", (message: FromWorker) => {
             if (message.kind === "failed") return fail(new Error(message.message));
-            if (message.kind === "idle") return nextTask();
-            sums.add(message.batch, message.tally as BatchTally);
+            waiting--;
+            message.tallies.forEach((tally, i) => sums.add(message.from + i, tally));
             options.onProgress?.(sums.batches, batches);
+            nextTask();
           });
-          nextTask();
+          // One task ahead, so that a thread never waits for this one.
+          for (let ahead = 0; ahead < TASKS_AHEAD; ahead++) nextTask();
         })
       ));
     } finally {

@@ -14,8 +14,7 @@ export type ToWorker =
 
 /** What a worker answers. */
 export type FromWorker =
-  | { readonly kind: "idle" }
-  | { readonly kind: "batch"; readonly batch: number; readonly tally: BatchTally }
+  | { readonly kind: "done"; readonly from: number; readonly tallies: readonly BatchTally[] }
   | { readonly kind: "failed"; readonly message: string };
 
 let run: Histories | null = null;
@@ -37,13 +36,16 @@ parentPort?.on("message", (message: ToWorker) => {
       return;
     }
     if (!run || !stop) throw new Error("The worker has no engine to run");
+    const tallies: BatchTally[] = [];
     for (let batch = message.from; batch < message.to && Atomics.load(stop, 0) === 0; batch++) {
       const tally = emptyBatchTally(tallySize);
       run(seed, batch, tally);
-      const buffers = Object.values(tally).map((array: Float64Array) => array.buffer as ArrayBuffer);
-      post({ kind: "batch", batch, tally }, buffers);
+      tallies.push(tally);
     }
-    post({ kind: "idle" });
+    const buffers = tallies.flatMap((tally) =>
+      Object.values(tally).map((array: Float64Array) => array.buffer as ArrayBuffer)
+    );
+    post({ kind: "done", from: message.from, tallies }, buffers);
   } catch (error) {
     post({ kind: "failed", message: error instanceof Error ? error.message : String(error) });
   }

@@ -74,6 +74,8 @@ const SMALLEST_SHARE = 1e-4;
 const LEAST_PROBABILITY = 0.01;
 /** Chi-square per degree of freedom at which even the best part says nothing (chosen). */
 const LARGEST_REDUCED_CHI_SQUARE = 10;
+/** Change of the stopping potential by halving the part that is no chance, in standard uncertainties (chosen). */
+const LARGEST_DRIFT = 3;
 /** Readings that a part has at least. */
 const FEWEST_READINGS = 6;
 /** Readings below the stopping potential that fix it and the amplitude. */
@@ -90,7 +92,8 @@ const FEWEST_BEYOND = 3;
  *
  * The formula holds near the stopping potential, where the emitter's density of states is flat. So the share begins at
  * 1/2 and is halved until chi-square is within chance (probability 1 %); a part that had to shrink is halved once more
- * where that passes too, as what has just passed may still bend. A part has at least 6 readings, 4 of them below the
+ * where that passes too, as what has just passed may still bend, and the change of the stopping potential by that is added
+ * to its standard uncertainty (in quadrature; chosen: an error in proportion to the part is as large). A part has at least 6 readings, 4 of them below the
  * stopping potential. Where none passes the one with the least chi-square per degree of freedom is taken, and above 10
  * the fit has failed. `usedShare` and `usedVoltagesV` tell what was fitted.
  *
@@ -111,18 +114,43 @@ export function fitStoppingPotential(curve: RetardingCurve, cell: RetardingCell)
     const first = tried.findIndex(passes);
     if (first === 0 || (first > 0 && tried.length > first + 1)) break;
   }
-  const { usedShare, voltages, data, fit } = bestPart(tried);
+  const { part: { usedShare, voltages, data, fit }, halvedFrom } = bestPart(tried);
+  const driftV = halvedFrom === null ? 0 : fit.values[0] - halvedFrom.fit.values[0];
   const [stopV, , baseline] = fit.values;
   const beyond = voltages.filter((voltage) => voltage > stopV).length;
-  const judgment = judge(fit, data, beyond);
+  const doubts = [
+    ...(beyond >= FEWEST_BEYOND ? [] : [
+      `only ${beyond} readings lie beyond the stopping potential, which leaves the back-current open; measure ` +
+      "further",
+    ]),
+    // The uncertainty of the change is the root of the difference of the squares: J. A. Hausman, Econometrica 46, 1251 (1978).
+    ...(halvedFrom === null ||
+        driftV ** 2 <=
+          LARGEST_DRIFT ** 2 * (fit.standardErrors[0] ** 2 - halvedFrom.fit.standardErrors[0] ** 2)
+      ? []
+      : [
+        `the stopping potential changes by ${
+          driftV.toPrecision(2)
+        } V when half of the part is fitted, more than by ` +
+        "chance: the formula does not hold; check the shape of the cell and the contact potential",
+      ]),
+    ...(tried.length > 1 && halvedFrom === null
+      ? [
+        "too few readings near the stopping potential tell whether the formula holds there; measure in smaller steps",
+      ]
+      : []),
+  ];
+  const judgment = judge(fit, data, doubts);
   const isGood = judgment.verdict !== "failed";
   const estimate = (value: number, index: number): Estimate | null =>
     isGood ? { value, standardUncertainty: fit.standardErrors[index] * judgment.inflation } : null;
-  const workFunctionEv = estimate(photonEnergyEv - stopV, 0);
+  const withDrift = (one: Estimate | null): Estimate | null =>
+    one && { ...one, standardUncertainty: Math.hypot(one.standardUncertainty, driftV) };
+  const workFunctionEv = withDrift(estimate(photonEnergyEv - stopV, 0));
   return {
     ...judgment,
     photonEnergyEv,
-    stoppingPotentialV: estimate(stopV, 0),
+    stoppingPotentialV: withDrift(estimate(stopV, 0)),
     workFunctionEv,
     workFunctionOf: "collector",
     emitterWorkFunctionEv: workFunctionEv && contactPotentialV && {
@@ -226,25 +254,28 @@ function passes({ fit }: Part): boolean {
   return fit.converged && chiSquareProbability(fit.chiSquare, fit.degreesOfFreedom) >= LEAST_PROBABILITY;
 }
 
-/** The largest part that passes, or where that had to shrink the next one if it passes too; else the least bad one. */
-function bestPart(parts: readonly Part[]): Part {
+/**
+ * The largest part that passes, or where that had to shrink the next one if it passes too; else the least bad one. With
+ * the part it was halved from, where both pass.
+ */
+function bestPart(parts: readonly Part[]): { readonly part: Part; readonly halvedFrom: Part | null } {
   const first = parts.findIndex(passes);
-  if (first < 0) return parts.reduce((a, b) => reducedChiSquare(b.fit) < reducedChiSquare(a.fit) ? b : a);
+  if (first < 0) {
+    const least = parts.reduce((a, b) => reducedChiSquare(b.fit) < reducedChiSquare(a.fit) ? b : a);
+    return { part: least, halvedFrom: null };
+  }
   const next = parts[first + 1];
-  return first > 0 && next !== undefined && passes(next) ? next : parts[first];
+  return first > 0 && next !== undefined && passes(next)
+    ? { part: next, halvedFrom: parts[first] }
+    : { part: parts[first], halvedFrom: null };
 }
 
 function reducedChiSquare({ chiSquare, degreesOfFreedom }: FitResult): number {
   return chiSquare / degreesOfFreedom;
 }
 
-function judge(fit: FitResult, data: Float64Array, beyond: number): Judgment {
-  const judgment = judgeFit(fit, data, [
-    ...(beyond >= FEWEST_BEYOND ? [] : [
-      `only ${beyond} readings lie beyond the stopping potential, which leaves the back-current open; measure ` +
-      "further",
-    ]),
-  ]);
+function judge(fit: FitResult, data: Float64Array, doubts: readonly string[]): Judgment {
+  const judgment = judgeFit(fit, data, doubts);
   if (reducedChiSquare(fit) <= LARGEST_REDUCED_CHI_SQUARE) return judgment;
   const reason =
     `chi-square per degree of freedom is ${

@@ -123,3 +123,36 @@ Deno.test("fit prints conventions, intervals, budget and an explanation for peop
     assert.match(few.stderr, /--bootstrap must be in 10\.\.1000000 replicates/);
   });
 });
+
+Deno.test("fit refuses an acceptance of 90 degrees and a resolution of zero, from options and files", async () => {
+  const files = {
+    "a.csv": METAL_FILE,
+    "zero.csv": METAL_FILE.replace(/^# resolution_fwhm_ev: .*$/m, "# resolution_fwhm_ev: 0"),
+    "wide.csv": METAL_FILE.replace(/^# acceptance_half_angle_deg: .*$/m, "# acceptance_half_angle_deg: 90"),
+  };
+  await inFolder(files, async (folder) => {
+    for (
+      const [args, stderr] of [
+        [
+          ["a.csv", "--acceptance", "90"],
+          /--acceptance must be in 0\.\.89 degrees: current value is 90 degrees/,
+        ],
+        [["a.csv", "--resolution", "0"], /--resolution must be in 0\.0001\.\.10 eV: current value is 0 eV/],
+        [["zero.csv"], /resolution_fwhm_ev must be > 0 eV.*: current value is "0" \(at zero\.csv(:\d+)?\)/],
+        [
+          ["wide.csv"],
+          /acceptance_half_angle_deg must be in 0\.\.89 degrees: .* "90" \(at wide\.csv(:\d+)?\)/,
+        ],
+      ] as const
+    ) {
+      const outcome = await twoedge(folder, "fit", ...args);
+      assert.deepEqual([outcome.code, outcome.stdout], [2, ""], args.join(" "));
+      assert.match(outcome.stderr, stderr);
+    }
+    const { stdout } = await twoedge(folder, "fit", "a.csv", "--bias", "-9.2");
+    assert.match(stdout, /^Warning: bias -9\.2 V is used as stated, but the file says -9 V$/m);
+    const far = await twoedge(folder, "fit", "a.csv", "--bias", "-10");
+    assert.equal(far.code, 1);
+    assert.doesNotMatch(far.stdout, /^ {2}(work function|valence-band maximum)/m);
+  });
+});

@@ -1,6 +1,7 @@
 import assert from "node:assert/strict";
 import { assertClose } from "../support/assert_close.ts";
 import { isoSpectraText, type IsoSpectrum } from "../support/iso14976_spectra.ts";
+import { textsOf } from "../support/drawing.ts";
 import {
   type CsvParts,
   csvParts,
@@ -247,7 +248,10 @@ Deno.test("fit refuses, or reads rightly, a cutoff and an edge on different kind
 });
 
 Deno.test("fit writes fit.json, the object it prints, and fit.svg when --out is given", async () => {
-  await inFolder({ "gold <1> & 2.csv": (await goldRun()).csv }, async (folder) => {
+  const { csv } = await goldRun();
+  const untitled = csv.replace(/^# title: .*\n/m, "");
+  assert.notEqual(untitled, csv);
+  await inFolder({ "gold <1> & 2.csv": untitled, "b.csv": csv }, async (folder) => {
     const { code, stdout } = await twoedge(folder, "fit", "gold <1> & 2.csv", "--json", "--out", "o");
     assert.equal(code, 0);
     assert.deepEqual(namesIn(`${folder}/o`), ["fit.json", "fit.svg"]);
@@ -256,6 +260,11 @@ Deno.test("fit writes fit.json, the object it prints, and fit.svg when --out is 
     assert.match(svg, /gold &lt;1&gt; &amp; 2/);
     assert.match(svg, /Kinetic energy on the axis of the file \/ eV/);
     assert.match(svg, /W = 5\.\d+\(\d\d\) eV/);
+    // A title in the file goes before its name.
+    const title = /^# title: (.*)$/m.exec(csv)![1];
+    assert.equal((await twoedge(folder, "fit", "b.csv", "--out", "t")).code, 0);
+    assert.ok(textsOf(Deno.readTextFileSync(`${folder}/t/fit.svg`)).includes(title), title);
+    assert.ok(!svg.includes(title));
   });
 });
 

@@ -116,6 +116,19 @@ Deno.test("plan refuses contradictory and impossible input, with the numbers", a
   });
 });
 
+Deno.test("plan refuses X-rays, under which there is no secondary cutoff to fit", async () => {
+  const file = new URL("../../scenarios/gold_under_aluminum_al_kalpha.json", import.meta.url).pathname;
+  await inFolder({}, async (folder) => {
+    const { code, stdout, stderr } = await twoedge(folder, "plan", file, "--target-ev", "0.01");
+    assert.deepEqual([code, stdout], [2, ""]);
+    assert.equal(
+      stderr,
+      "Cannot plan as the photon energy must be <= 60 eV, for both edges are needed: current value is " +
+        `"1486.7 eV" (at ${file})\n`,
+    );
+  });
+});
+
 Deno.test("cautions() names what fits the source and the sample, and defers to local rules", () => {
   const scenario = parseScenario(SCENARIO_TEXT, "gold.json");
   const text = (changes: { readonly light?: unknown; readonly material?: string }): string =>

@@ -102,11 +102,18 @@ Deno.test("simulate draws what slow electrons went through, in counts", async ()
 
 Deno.test("simulate tells and draws the number of losses, and the depths, of lines under X-rays", async () => {
   await inFolder({}, async (folder) => {
-    assert.equal((await twoedge(folder, "simulate", X_RAYS, ...SMALL, "--out", "a")).code, 0);
+    const { code, stdout } = await twoedge(folder, "simulate", X_RAYS, ...SMALL, "--out", "a");
+    assert.equal(code, 0);
+    assert.doesNotMatch(stdout, /cutoff|Fermi edge/);
     assert.deepEqual(namesIn(`${folder}/a`), ["depths.svg", ...FILES]);
     const { levels } = JSON.parse(Deno.readTextFileSync(`${folder}/a/result.json`));
     assert.ok(levels.length > 0);
-    for (const { name, partialIntensities } of levels) {
+    for (const { name, kineticEnergyEv, meanEscapeDepthNm, partialIntensities } of levels) {
+      const depth = meanEscapeDepthNm.toFixed(2);
+      const line = `  ${name.padEnd(26)} ${
+        kineticEnergyEv.toFixed(3)
+      } eV as recorded, mean escape depth ${depth} nm\n`;
+      assert.ok(stdout.includes(line), line);
       assert.equal(partialIntensities[0], 1, name);
       // 70 eV are followed, and all materials lose 10 to 30 eV at a time: no more than some ten losses.
       assert.ok(partialIntensities.every((value: number) => value >= 0 && value < 1.5), name);

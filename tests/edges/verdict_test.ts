@@ -66,6 +66,50 @@ const CASES: readonly Case[] = [
   ["the Fermi edge is not where the bias puts it", "doubtful", /charging/, METAL, {
     region: { biasV: -8.75 },
   }],
+  [
+    "the bias is stated 0.6 V too large",
+    "failed",
+    /like a Fermi edge lies 0\.(59|6\d) eV below where/,
+    METAL,
+    {
+      region: { biasV: -9.6 },
+    },
+  ],
+  [
+    "the bias is stated 0.8 V too small",
+    "failed",
+    /like a Fermi edge lies 0\.(79|8\d) eV above where/,
+    METAL,
+    {
+      region: { biasV: -8.2 },
+    },
+  ],
+  ["the analyzer work function is wrong", "failed", /like a Fermi edge lies 0\.(59|6\d) eV below/, METAL, {
+    region: { analyzerWorkFunctionEv: 3.8 },
+  }],
+  ["few counts lie at a Fermi edge of wrong bias", "failed", /like a Fermi edge/, { ...METAL, states: 20 }, {
+    region: { biasV: -10 },
+  }],
+  [
+    "a valence band begins above the Fermi level",
+    "failed",
+    /maximum would lie 0\.\d+ eV above the Fermi level/,
+    {
+      ...METAL,
+      gapEv: 0.3,
+      states: 3000,
+    },
+    { region: { biasV: -8 } },
+  ],
+  [
+    "the stated resolution is wider than the edges",
+    "doubtful",
+    /200 meV FWHM is wider than the Fermi edge/,
+    METAL,
+    {
+      region: { resolutionFwhmEv: 0.2 },
+    },
+  ],
   ["the Fermi edge is wider than the resolution", "doubtful", /as wide as temperature/, METAL, {
     region: { resolutionFwhmEv: 0.03 },
   }],
@@ -121,6 +165,75 @@ Deno.test("measureWorkFunction() finds a weak patch below the main cutoff", () =
   const { patches, verdict } = measureTwoEdges({ ...METAL, patches: [[4.3, 0.1], [5.1, 0.9]] }, 1);
   assert.equal(verdict, "doubtful");
   assert.ok(Math.abs(patches!.lowerEv.value - 8.9) < 4 * patches!.lowerEv.standardUncertainty);
+});
+
+/** {@link METAL} with Gaussian bands 1.5 eV (of this width and height) and 3 eV below the Fermi level, and no states there. */
+function measureBand(sigmaEv: number, peak: number): WorkFunctionResult {
+  return measureTwoEdges({ ...METAL, states: 0 }, 1, {
+    counts: (drawn, energiesEv) => {
+      const bands = energiesEv.map((energy) => {
+        const x = energy - FERMI_EDGE_EV;
+        return peak *
+          (Math.exp(-0.5 * ((x + 1.5) / sigmaEv) ** 2) + 2 * Math.exp(-0.5 * ((x + 3) / 0.4) ** 2));
+      });
+      return countTwoEdges(bands, 2).map((count, i) => count + drawn[i]);
+    },
+  });
+}
+
+Deno.test("measureWorkFunction() doubts a valence-band maximum whose two scales disagree", () => {
+  // Line at the steepest point of a Gaussian, 1 sigma out, meets zero 2 sigma out; its logarithm steepens on to the background.
+  const wide = measureBand(0.3, 1000);
+  assert.equal(wide.verdict, "doubtful");
+  assert.match(
+    wide.reasons.join(),
+    /on a logarithmic scale lie 0\.\d\d eV apart, \d+ standard uncertainties/,
+  );
+  const { value, standardUncertainty } = wide.valenceBandMaximumEv!;
+  assert.ok(Math.abs(value - 0.9) < 4 * standardUncertainty, `${value}`);
+  // A straight edge: both agree.
+  const straight = measureTwoEdges({ ...METAL, gapEv: 1.5, states: 3000 }, 1);
+  assert.deepEqual([straight.verdict, straight.reasons], ["good", []]);
+});
+
+Deno.test("measureWorkFunction() doubts, but does not refuse, a band nearly as narrow as a Fermi edge", () => {
+  const narrow = measureBand(0.1, 3000);
+  assert.equal(narrow.verdict, "doubtful");
+  assert.match(narrow.reasons.join(), /like a Fermi edge .*; if it is not, it is a narrow band/);
+  assert.ok(Math.abs(narrow.workFunctionEv!.value - 5.1) < 4 * narrow.workFunctionEv!.standardUncertainty);
+});
+
+Deno.test("measureWorkFunction() refuses steps too coarse for an edge, as of meV read as eV", () => {
+  const { energiesEv, counts } = expectedTwoEdges(METAL);
+  const region = twoEdgesRegion(METAL, energiesEv.map((energy) => 1000 * energy), counts);
+  assert.throws(
+    () => measureWorkFunction([region], { knownLine: nearestLine }),
+    (error) =>
+      error instanceof InputError &&
+      error.message ===
+        "Cannot fit spectrum as the energy step must be <= 1 eV (too coarse for any edge; are the " +
+          'energies in eV?): current value is "20 eV" (at invented)',
+  );
+  // Beside a region that can be fitted a coarse one is left out.
+  const fine = twoEdgesRegion(METAL, energiesEv, countTwoEdges(counts, 1));
+  assert.equal(measureWorkFunction([region, fine], { knownLine: nearestLine }).verdict, "good");
+});
+
+Deno.test("measureWorkFunction() warns of each stated value that the file contradicts, and of no other", () => {
+  const warnings = (options: Required<Change>["options"]): string[] =>
+    measureTwoEdges(METAL, 1, { options }).warnings.filter(({ code }) => code === "overridden")
+      .map(({ message }) => message);
+  assert.deepEqual(warnings({ biasV: -9.1, temperatureK: 77, resolutionFwhmEv: 0.09 }), [
+    "bias -9.1 V is used as stated, but the file says -9 V",
+    "temperature 77 K is used as stated, but the file says 300 K",
+    "resolution 0.09 eV is used as stated, but the file says 0.08 eV",
+  ]);
+  assert.match(warnings({ photonEnergyEv: 21.3 }).join(), /^photon energy 21\.3 eV .* the file says 21\.218/);
+  assert.match(warnings({ axis: "binding" }).join(), /^a binding energy axis .* says kinetic energies$/);
+  assert.deepEqual(
+    warnings({ biasV: -9, photonEnergyEv: 21.218, axis: "kinetic", acceptanceHalfAngleDeg: 0 }),
+    [],
+  );
 });
 
 Deno.test("measureWorkFunction() says that two regions hold the same counts", () => {

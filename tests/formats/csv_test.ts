@@ -1,7 +1,7 @@
 import assert from "node:assert/strict";
 import fc from "fast-check";
 import { InputError } from "../../src/base/mod.ts";
-import { type CsvOptions, readSpectrumCsv, writeSpectrumCsv } from "../../src/formats/mod.ts";
+import { type CsvOptions, readSpectrumCsv, writeRegionCsv, writeSpectrumCsv } from "../../src/formats/mod.ts";
 
 const ROWS = "5.0,3\n5.1,4\n5.2,9\n5.3,8\n5.4,7\n";
 const GOOD = "kinetic_energy_ev,counts\n" + ROWS;
@@ -37,6 +37,32 @@ Deno.test("readSpectrumCsv() takes a bias for one of energies as recorded unless
     ["", "# bias_v: -9\n", "# bias_v: 9\n# as_recorded: false\n", "# as_recorded: true\n"].map(asRecorded),
     [false, true, false, true],
   );
+});
+
+Deno.test("readSpectrumCsv() refuses a misspelled key, and takes one in quotes or with a number behind it", () => {
+  const cases = [
+    ["bais_v", "bias_v"],
+    ["Bias_mV", "bias_v"],
+    ["temprature_k", "temperature_k"],
+    ["photon_enery_ev", "photon_energy_ev"],
+    ["resolution_fhwm_ev", "resolution_fwhm_ev"],
+    ["sweep", "sweeps"],
+  ];
+  for (const [key, meant] of cases) {
+    assert.throws(() => readSpectrumCsv(`# sample: Au\n# ${key}: 3\n${GOOD}`, "a.csv"), {
+      name: "InputError",
+      message:
+        `Cannot read the key as it must be a known one (did you mean ${meant}?) or stand in quotes if it is ` +
+        `meant as it is: current value is "${key}" (at a.csv:2)`,
+    });
+    const [region] = readSpectrumCsv(`# "${key}": 3\n${GOOD}`, "a.csv").regions;
+    assert.deepEqual(region.metadata, { [key]: "3" });
+    // What a converter writes reads back the same.
+    assert.deepEqual(readSpectrumCsv(writeRegionCsv(region), "a.csv").regions, [region]);
+  }
+  const others = { "bias_v (2)": "3", seed: "1", title: "a", version: "b", bias: "c", sample: "d" };
+  const head = Object.entries(others).map(([key, value]) => `# ${key}: ${value}\n`).join("");
+  assert.deepEqual(readSpectrumCsv(head + GOOD, "a.csv").regions[0].metadata, others);
 });
 
 Deno.test("readSpectrumCsv() gives null when the file says nothing", () => {

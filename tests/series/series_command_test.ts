@@ -66,6 +66,23 @@ Deno.test("series stopping gives the collector's work function, and the emitter'
   assertClose(result.line.planckEvS.value, 4.135667697e-15, { relative: 1e-3 }, "CODATA 2022");
 });
 
+Deno.test("series stopping leaves out a curve without a number and says why", async () => {
+  const leaking = STOPPING.split("\n").map((line) => {
+    const [energy, voltage, current, uncertainty] = line.split(",");
+    if (energy !== "6") return line;
+    return [energy, voltage, Number(current) - 1e-10 * (Number(voltage) + 0.5) ** 2, uncertainty].join(",");
+  }).join("\n");
+  await inFolder({ "series.csv": leaking }, async (folder) => {
+    const { code, stdout } = await twoedge(folder, "series", "stopping", "series.csv");
+    assert.equal(code, 1);
+    assert.match(
+      stdout,
+      /\nLeft out: 6 eV, as chi-square per degree of freedom is [^\n]+, above 10, in every part/,
+    );
+    assert.equal(stdout.match(/stopping potential +-?[\d.]+\(\d+\) V/g)?.length, 2);
+  });
+});
+
 Deno.test("series kemax gives h/e within 1 % from the sodium line of 1916", async () => {
   const result = await answer("kemax", MILLIKAN);
   assertClose(result.planckEvS.value, 4.135667697e-15, { relative: 0.01 }, "CODATA 2022");
