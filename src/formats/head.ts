@@ -13,7 +13,7 @@ const NUMERIC_KEYS: Readonly<Record<string, readonly [string, (value: number) =>
   pass_energy_ev: ["must be > 0 eV", (value) => value > 0],
   dwell_s: ["must be > 0 s", (value) => value > 0],
   sweeps: ["must be a whole number >= 1", (value) => Number.isInteger(value) && value >= 1],
-  acceptance_half_angle_deg: ["must be in > 0..90 degrees", (value) => value > 0 && value <= 90],
+  acceptance_half_angle_deg: ["must be in > 0..89 degrees", (value) => value > 0 && value <= 89],
   temperature_k: ["must be >= 0 K", (value) => value >= 0],
 };
 

@@ -117,7 +117,7 @@ const resolution = z.discriminatedUnion("kind", [
 
 const analyzer = z.strictObject({
   workFunctionEv: energy(0.5, 10),
-  acceptanceHalfAngleDeg: z.number().positive().max(90),
+  acceptanceHalfAngleDeg: z.number().positive().max(89),
   resolution,
   transmissionExponent: z.number().min(0).max(2).default(0),
   detectionFraction: z.number().positive().max(1).default(1),

@@ -189,7 +189,7 @@ export interface GeometrySettings {
 export interface AnalyzerSettings {
   /** Work function of the analyzer, eV, 0.5..10. */
   readonly workFunctionEv: number;
-  /** Half-angle of the acceptance cone, degrees, > 0..90. */
+  /** Half-angle of the acceptance cone, degrees, > 0..89. */
   readonly acceptanceHalfAngleDeg: number;
   /** Energy resolution: given, or that of a hemisphere at constant pass energy. */
   readonly resolution:

@@ -195,13 +195,6 @@ export function historyRunner(
   const { layers, transfers, topsNm, topPaths, pathNm, pathsPerNm } = stack;
   const { vacuumBin, stepEv, count } = stack.grid;
   const { cells } = parts[0].detection;
-  const {
-    bins: startBins,
-    layers: startLayers,
-    topsNm: startTopsNm,
-    depthsNm: startDepthsNm,
-    spans: startSpans,
-  } = source;
   const outcomes = source.table.length;
   const partTable = new Uint32Array(parts.length);
   writeAliasRow(parts.map((part) => part.share), partTable, 0);
