@@ -1,9 +1,22 @@
+import { cannot } from "../base/mod.ts";
 import { lineProfile } from "../spectrum/mod.ts";
 import type { ResolvedFast, ResolvedScenario } from "../scenario/mod.ts";
 import { type LossLayout, lossLayout, type Tally } from "../transport/mod.ts";
 import type { FastEngineData } from "../transport/mod.ts";
 import type { EngineResponse } from "./response.ts";
 import { surfaceLosses } from "./surface_losses.ts";
+
+/** Where electrons without a loss come from. */
+export interface EmissionDepth {
+  /** Depth of the upper face of their layer, nm. */
+  readonly topNm: number;
+  /** Width of a cell, nm. */
+  readonly cellNm: number;
+  /** Middles of the cells, nm. */
+  readonly depthsNm: readonly number[];
+  /** Share of the electrons per nm of depth in each cell. */
+  readonly densityPerNm: readonly number[];
+}
 
 /** What of a core level reaches the analyzer and from how deep. */
 export interface ExpectedLevel {
@@ -23,7 +36,7 @@ export interface ExpectedLevel {
   /** Depth above which 95 % of them start, nm (information depth, ISO 18115-1). */
   readonly informationDepth95Nm: number;
   /** Emission depth distribution: share of the signal per nm of depth, at the middle of each cell. */
-  readonly emissionDepth: { readonly depthsNm: readonly number[]; readonly densityPerNm: readonly number[] };
+  readonly emissionDepth: EmissionDepth;
 }
 
 /** Losses of one electron up to which partial intensities are given. */
@@ -169,18 +182,43 @@ export function expectedLevels(
     }
     const total = depths.reduce((sum, value) => sum + value, 0);
     const depthsNm = Array.from(depths, (_, d) => layerTops[level.layer] + (d + 0.5) * depthCellNm);
-    let before = 0;
-    let d = 0;
-    while (d < depthCells - 1 && before + depths[d] < 0.95 * total) before += depths[d++];
-    const inside = depths[d] > 0 ? (0.95 * total - before) / depths[d] : 0;
+    const emissionDepth = {
+      topNm: layerTops[level.layer],
+      cellNm: depthCellNm,
+      depthsNm,
+      densityPerNm: Array.from(depths, (value) => value / total / depthCellNm),
+    };
     return {
       name: level.name,
       kineticEnergyEv: fast.photonEnergyEv - level.bindingEnergyEv + resolved.kineticEnergyShiftEv,
       noLossPerPhoton: noLoss * Math.exp(-level.surfaceExcitations),
       partialIntensities: noLoss > 0 ? Array.from(byLosses, (value, n) => n === 0 ? 1 : value / noLoss) : [],
       meanEscapeDepthNm: depths.reduce((sum, value, i) => sum + value * depthsNm[i], 0) / total,
-      informationDepth95Nm: layerTops[level.layer] + (d + inside) * depthCellNm,
-      emissionDepth: { depthsNm, densityPerNm: Array.from(depths, (value) => value / total / depthCellNm) },
+      informationDepth95Nm: informationDepthNm(emissionDepth, 95),
+      emissionDepth,
     };
   });
+}
+
+/**
+ * Depth above which a share of the electrons without a loss start (information depth, ISO 18115-1).
+ *
+ * @param distribution Emission depth distribution of a level.
+ * @param percent Share, percent, > 0..99.
+ * @returns Depth from the surface, nm; linear inside a cell of the distribution.
+ * @throws {RangeError} If the share is out of range.
+ */
+export function informationDepthNm(distribution: EmissionDepth, percent: number): number {
+  if (!(percent > 0 && percent <= 99)) {
+    throw new RangeError(cannot("give an information depth", "percent must be in > 0..99", percent));
+  }
+  const { topNm, cellNm, densityPerNm } = distribution;
+  const wanted = percent / 100;
+  let before = 0;
+  let cell = 0;
+  while (cell < densityPerNm.length - 1 && before + densityPerNm[cell] * cellNm < wanted) {
+    before += densityPerNm[cell++] * cellNm;
+  }
+  const inside = densityPerNm[cell] > 0 ? (wanted - before) / (densityPerNm[cell] * cellNm) : 0;
+  return topNm + (cell + inside) * cellNm;
 }

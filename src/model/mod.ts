@@ -7,4 +7,4 @@
 export { engineData, pairEngineData } from "./engine.ts";
 export { type CellCurve, cellCurve, type CellSettings, collectingAll, noisyCurrents } from "./cell.ts";
 export { countSpectrum, type ExpectedSpectrum, expectedSpectrum } from "./expected.ts";
-export type { ExpectedLevel } from "./fast.ts";
+export { type EmissionDepth, type ExpectedLevel, informationDepthNm } from "./fast.ts";

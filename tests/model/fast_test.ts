@@ -1,5 +1,5 @@
 import assert from "node:assert/strict";
-import { engineData, expectedSpectrum } from "../../src/model/mod.ts";
+import { engineData, expectedSpectrum, informationDepthNm } from "../../src/model/mod.ts";
 import { runSeries } from "../../src/run/mod.ts";
 import { parseScenario, resolveScenario } from "../../src/scenario/mod.ts";
 import { assertClose } from "../support/assert_close.ts";
@@ -145,4 +145,17 @@ Deno.test("surface excitations take exp(-P) of the line and put it below, nothin
   const all = ({ expected }: typeof without) => expected.counts.reduce((sum, value) => sum + value, 0);
   // Of a loss of 20 eV or more little leaves the window of 98 eV below the line.
   assertClose(all(withThem), all(without), { relative: 0.03 });
+});
+
+Deno.test("informationDepthNm() of an exponential distribution is the mean depth times ln(1/(1 - share))", () => {
+  const cellNm = 0.01;
+  const densityPerNm = Array.from({ length: 2000 }, (_, i) => Math.exp(-(i + 0.5) * cellNm));
+  const distribution = { topNm: 0.5, cellNm, depthsNm: [], densityPerNm };
+  // ISO 18115-1; exact for a straight line: lambda cos(theta) ln(1/(1 - P/100)).
+  for (const percent of [50, 90, 95, 99]) {
+    assertClose(informationDepthNm(distribution, percent), 0.5 + Math.log(1 / (1 - percent / 100)), {
+      absolute: 2e-3,
+    });
+  }
+  assert.throws(() => informationDepthNm(distribution, 100), /percent must be in > 0..99/);
 });
