@@ -65,7 +65,7 @@ const USAGE: readonly (readonly [readonly string[], RegExp])[] = [
   [["fit", "a.csv", "--bias", "0x9"], /"0x9" for bias: must be a decimal number/],
   [["fit", "a.csv", "--bias", "-1e4"], /--bias must be in -1000\.\.1000 V: current value is -10000 V/],
   [["fit", "a.csv", "--temperature", "-1"], /--temperature must be in 0\.\.3000 K: current value is -1 K/],
-  [["fit", "a.csv", "--acceptance", "100"], /--acceptance must be in 0\.\.90 degrees/],
+  [["fit", "a.csv", "--acceptance", "100"], /--acceptance must be in 0\.\.89 degrees/],
   [
     ["materials", "Pb"],
     /material must be one of Au, Ag, .*, ITO \(did you mean Pt\?\): current value is "Pb"/,

@@ -141,7 +141,7 @@ Deno.test("fit refuses an acceptance of 90 degrees and a resolution of zero, fro
         [["zero.csv"], /resolution_fwhm_ev must be > 0 eV.*: current value is "0" \(at zero\.csv(:\d+)?\)/],
         [
           ["wide.csv"],
-          /acceptance_half_angle_deg must be in 0\.\.89 degrees: .* "90" \(at wide\.csv(:\d+)?\)/,
+          /acceptance_half_angle_deg" as it must be in > 0\.\.89 degrees: .* "90" \(at wide\.csv(:\d+)?\)/,
         ],
       ] as const
     ) {
