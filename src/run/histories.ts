@@ -1,7 +1,15 @@
 import { Worker } from "node:worker_threads";
-import { type EngineData, engineFrom } from "../transport/mod.ts";
-import { emptyBatchTally, HISTORIES_PER_BATCH, type Tally, TallyAccumulator } from "../transport/mod.ts";
+import {
+  type BatchTally,
+  emptyBatchTally,
+  type EngineData,
+  engineFrom,
+  HISTORIES_PER_BATCH,
+  type Tally,
+  TallyAccumulator,
+} from "../transport/mod.ts";
 import { moduleBeside } from "./module_url.ts";
+import { buffersOf } from "./tally_memory.ts";
 import type { FromWorker, ToWorker } from "./worker.ts";
 
 /** Batches handed to a worker at a time: some milliseconds of work, so that stopping and progress feel immediate. */
@@ -117,12 +125,12 @@ export class HistoryPool {
       await Promise.all(this.#workers.map((worker) =>
         new Promise<void>((finish, fail) => {
           let waiting = 0;
-          const nextTask = (): void => {
+          const nextTask = (spent: readonly BatchTally[]): void => {
             if (next < batches && Atomics.load(this.#stop, 0) === 0) {
               const from = next;
               next = Math.min(batches, next + BATCHES_PER_TASK);
               waiting++;
-              tell(worker, { kind: "run", from, to: next });
+              tell(worker, { kind: "run", from, to: next, spent }, buffersOf(spent));
             } else if (waiting === 0) finish();
           };
           worker.removeAllListeners("error").removeAllListeners("message");
@@ -132,10 +140,11 @@ export class HistoryPool {
             waiting--;
             message.tallies.forEach((tally, i) => sums.add(message.from + i, tally));
             options.onProgress?.(sums.batches, batches);
-            nextTask();
+            // Memory that is added up goes back; a batch that waits for earlier ones keeps its own.
+            nextTask(message.tallies.filter((_, i) => message.from + i < sums.batches));
           });
           // One task ahead, so that a thread never waits for this one.
-          for (let ahead = 0; ahead < TASKS_AHEAD; ahead++) nextTask();
+          for (let ahead = 0; ahead < TASKS_AHEAD; ahead++) nextTask([]);
         })
       ));
     } finally {
@@ -169,6 +178,6 @@ export function isIdle(data: EngineData): boolean {
   return data.kind === "pair" && data.source === null;
 }
 
-function tell(worker: Worker, message: ToWorker): void {
-  worker.postMessage(message);
+function tell(worker: Worker, message: ToWorker, transfer: ArrayBuffer[] = []): void {
+  worker.postMessage(message, transfer);
 }

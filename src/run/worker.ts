@@ -4,13 +4,25 @@
  * @module
  */
 import { parentPort } from "node:worker_threads";
-import { type EngineData, engineFrom } from "../transport/mod.ts";
-import { type BatchTally, emptyBatchTally, type Histories } from "../transport/mod.ts";
+import {
+  type BatchTally,
+  emptyBatchTally,
+  type EngineData,
+  engineFrom,
+  type Histories,
+} from "../transport/mod.ts";
+import { buffersOf } from "./tally_memory.ts";
 
 /** What a worker is told. */
 export type ToWorker =
   | { readonly kind: "setup"; readonly data: EngineData; readonly seed: number; readonly stop: Int32Array }
-  | { readonly kind: "run"; readonly from: number; readonly to: number };
+  | {
+    readonly kind: "run";
+    readonly from: number;
+    readonly to: number;
+    /** Tallies of earlier tasks that are added up, to be used again. */
+    readonly spent: readonly BatchTally[];
+  };
 
 /** What a worker answers. */
 export type FromWorker =
@@ -36,16 +48,15 @@ parentPort?.on("message", (message: ToWorker) => {
       return;
     }
     if (!run || !stop) throw new Error("The worker has no engine to run");
+    const free = [...message.spent];
     const tallies: BatchTally[] = [];
     for (let batch = message.from; batch < message.to && Atomics.load(stop, 0) === 0; batch++) {
-      const tally = emptyBatchTally(tallySize);
+      const tally = free.pop() ?? emptyBatchTally(tallySize);
+      for (const sums of Object.values(tally)) sums.fill(0);
       run(seed, batch, tally);
       tallies.push(tally);
     }
-    const buffers = tallies.flatMap((tally) =>
-      Object.values(tally).map((array: Float64Array) => array.buffer as ArrayBuffer)
-    );
-    post({ kind: "done", from: message.from, tallies }, buffers);
+    post({ kind: "done", from: message.from, tallies }, buffersOf(tallies));
   } catch (error) {
     post({ kind: "failed", message: error instanceof Error ? error.message : String(error) });
   }
