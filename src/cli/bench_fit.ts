@@ -1,6 +1,7 @@
 import { nearestLine } from "../data/mod.ts";
 import { measureWorkFunction } from "../edges/mod.ts";
 import { countSpectrum, type ExpectedSpectrum } from "../model/mod.ts";
+import { simulatedRegion } from "../run/mod.ts";
 import type { ResolvedScenario } from "../scenario/mod.ts";
 
 /** Fits that warm up, and fits that are timed. */
@@ -18,20 +19,10 @@ export function fitBench(resolved: ResolvedScenario, spectrum: ExpectedSpectrum)
   const seconds = (seed: number, replicates: number): number => {
     const counts = countSpectrum(spectrum, seed);
     const from = performance.now();
-    const { verdict } = measureWorkFunction([{
-      label: "",
-      file: "",
-      energyKind: "kinetic",
-      energiesEv: spectrum.kineticEnergiesEv,
-      counts,
-      photonEnergyEv: resolved.photonEnergyEv,
-      biasV: resolved.biasV,
-      asRecorded: true,
-      analyzerWorkFunctionEv: resolved.analyzerWorkFunctionEv,
-      acceptanceHalfAngleDeg: resolved.acceptanceHalfAngleDeg,
-      temperatureK: resolved.temperatureK,
-      resolutionFwhmEv: resolved.resolutionFwhmEv,
-    }], { knownLine: nearestLine, bootstrap: { replicates, seed: 1 } });
+    const { verdict } = measureWorkFunction([simulatedRegion(resolved, spectrum.kineticEnergiesEv, counts)], {
+      knownLine: nearestLine,
+      bootstrap: { replicates, seed: 1 },
+    });
     if (verdict === "failed") throw new Error("The fit failed");
     return (performance.now() - from) / 1000;
   };

@@ -8,20 +8,13 @@ import { fitEach } from "./fit_each.ts";
 import { fitSvg, regionsOnFitAxis } from "./fit_figure.ts";
 import { explanationText, fitText } from "./fit_text.ts";
 import { type Context, count, GOOD, jsonFlag, NOT_TRUSTED, optionalNumber, outFlag, text } from "./flags.ts";
+import { columnsFlag, regionFlag } from "./read.ts";
 import { terminalPlot } from "./terminal_plot.ts";
 
 /** Seed of the bootstrap unless one is given. */
 const DEFAULT_SEED = 1;
 /** Fewer replicates do not make a standard deviation. */
 const LEAST_REPLICATES = 10;
-
-function columnPair(text: string): readonly [string, string] {
-  const names = text.split(",").map((name) => name.trim());
-  if (names.length !== 2 || names.includes("")) {
-    throw new SyntaxError(`must be two column names ENERGY,COUNTS, not ${JSON.stringify(text)}`);
-  }
-  return [names[0], names[1]];
-}
 
 type FitFlags = {
   photonEnergy?: number;
@@ -82,21 +75,8 @@ export const fitCommand = buildCommand({
         brief: "Kind of energy axis",
         optional: true,
       },
-      region: {
-        kind: "parsed",
-        parse: text,
-        brief: "Use only the region with this label; repeatable",
-        placeholder: "LABEL",
-        variadic: true,
-        optional: true,
-      },
-      columns: {
-        kind: "parsed",
-        parse: columnPair,
-        brief: "Names of the energy and the counts column of a CSV file",
-        placeholder: "ENERGY,COUNTS",
-        optional: true,
-      },
+      region: regionFlag,
+      columns: columnsFlag,
       temperature: optionalNumber("Sample temperature, K", "K"),
       acceptance: optionalNumber("Half-angle of the analyzer's acceptance, degrees", "DEG"),
       fermiLevel: optionalNumber("Position of the Fermi level on the energy axis, eV", "EV"),

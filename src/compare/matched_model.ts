@@ -1,3 +1,4 @@
+import { FWHM_PER_SIGMA } from "../math/mod.ts";
 import { curveAt, curveSlopeAt, foldGaussian } from "./curve.ts";
 import { lagrangeWeights, type Template, type TemplateFamily } from "./template.ts";
 
@@ -38,7 +39,7 @@ export const EXTRA_FWHM = 2;
 export const BACKGROUND = 3;
 export const FIRST_INTENSITY = 4;
 
-const SIGMAS_PER_FWHM = 1 / (2 * Math.sqrt(2 * Math.LN2));
+const SIGMAS_PER_FWHM = 1 / FWHM_PER_SIGMA;
 
 /**
  * Expected counts `intensity T((E - offset)/gain) + dark + background`, T without its dark counts: the gain about the Fermi edge, T folded with the extra

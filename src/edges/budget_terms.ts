@@ -1,3 +1,4 @@
+import { FWHM_PER_SIGMA } from "../math/mod.ts";
 import type { BudgetTerm } from "./budget.ts";
 import type { FittedCutoff } from "./cutoff.ts";
 import type { FittedFermiEdge } from "./fermi.ts";
@@ -13,7 +14,6 @@ const AXIS_UNCERTAINTY_EV = 0.03;
 const RAMP_SHARE = 0.02;
 /** Our own simulation of a sharp quantum barrier moves the fitted cutoff by 18 to 20 meV, eV. */
 const LATE_RISE_EV = 0.02;
-const FWHM_PER_SIGMA = 2 * Math.sqrt(2 * Math.LN2);
 
 /** What the budget is made of. */
 export interface BudgetParts {

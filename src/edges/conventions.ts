@@ -1,3 +1,4 @@
+import { FWHM_PER_SIGMA } from "../math/mod.ts";
 import type { Estimate } from "../base/mod.ts";
 import { edgeTangentShiftEv } from "../spectrum/mod.ts";
 import type { FittedCutoff } from "./cutoff.ts";
@@ -28,8 +29,6 @@ export interface CutoffConventions {
   /** Largest less smallest uncorrected position, eV. */
   readonly uncorrectedSpreadEv: number;
 }
-
-const FWHM_PER_SIGMA = 2 * Math.sqrt(2 * Math.LN2);
 
 /**
  * Reads the cutoff off the counts by the two conventions people use beside a model, and corrects each for the width of

@@ -1,3 +1,4 @@
+import { FWHM_PER_SIGMA } from "../math/mod.ts";
 import type { Notice } from "../base/mod.ts";
 import type { FittedCutoff } from "./cutoff.ts";
 import type { BadChannels } from "./data_checks.ts";
@@ -34,8 +35,6 @@ const OWN_LIMIT_EV = 0.5;
 const BOOTSTRAP_FAILURES = 0.05;
 /** An axis can be read in the wrong direction only where it is long enough to show both edges, eV. */
 const REVERSIBLE_EV = 5;
-
-const FWHM_PER_SIGMA = 2 * Math.sqrt(2 * Math.LN2);
 
 /** What speaks against an answer, collected on the way. */
 export class Findings {

@@ -7,7 +7,6 @@
 export { accelerationEv, kineticEnergyShiftEv } from "./energy_scale.ts";
 export {
   applyResponse,
-  FWHM_PER_SIGMA,
   hemisphereResolutionEv,
   type ResponseMatrix,
   responseMatrix,

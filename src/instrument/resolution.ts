@@ -1,7 +1,4 @@
-import { normalCdf } from "../math/mod.ts";
-
-/** Full width at half maximum of a Gaussian in standard deviations, `2 sqrt(2 ln 2)`. */
-export const FWHM_PER_SIGMA: number = 2 * Math.sqrt(2 * Math.LN2);
+import { FWHM_PER_SIGMA, normalCdf } from "../math/mod.ts";
 
 /** Response is followed out to this many standard deviations. */
 const REACH_SIGMAS = 7;

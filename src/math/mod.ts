@@ -4,6 +4,7 @@
  * @module
  */
 export { erfc, erfcx, fastErfcx, normalCdf, normalPdf } from "./erfc.ts";
+export { FWHM_PER_SIGMA } from "./gaussian.ts";
 export { interpolateLinear } from "./interpolate.ts";
 export { gaussLegendre, type QuadratureRule } from "./quadrature.ts";
 export {

@@ -6,5 +6,5 @@
  */
 export { batchesFor, HistoryPool, isIdle, runHistories, type RunOptions, runSeries } from "./histories.ts";
 export { type SpectrumSummary, summarize, worstRelativeStandardError } from "./summary.ts";
-export { type PointResult, PointRunner, type PointSpectrum, round9 } from "./point.ts";
+export { type PointResult, PointRunner, type PointSpectrum, round9, simulatedRegion } from "./point.ts";
 export { runSweep, type SweepOptions, type SweepResult } from "./sweep.ts";

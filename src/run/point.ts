@@ -1,5 +1,5 @@
 import { nearestLine } from "../data/mod.ts";
-import { measureWorkFunction } from "../edges/mod.ts";
+import { type EdgeRegion, measureWorkFunction } from "../edges/mod.ts";
 import { countSpectrum, engineData, expectedSpectrum } from "../model/mod.ts";
 import type { EngineData } from "../transport/mod.ts";
 import type { ResolvedScenario } from "../scenario/mod.ts";
@@ -97,22 +97,8 @@ function fitted(
   kineticEnergiesEv: Float64Array,
   counts: Float64Array,
 ): PointValues {
-  const result = measureWorkFunction([{
-    label: "",
-    file: "simulated",
-    energyKind: "kinetic",
-    energiesEv: kineticEnergiesEv.map(round9),
-    counts,
-    photonEnergyEv: resolved.photonEnergyEv,
-    biasV: resolved.biasV,
-    asRecorded: true,
-    analyzerWorkFunctionEv: resolved.analyzerWorkFunctionEv,
-    acceptanceHalfAngleDeg: resolved.acceptanceHalfAngleDeg,
-    temperatureK: resolved.temperatureK,
-    resolutionFwhmEv: resolved.resolutionFwhmEv,
-    deadTimeS: resolved.acquisition.deadTimeS > 0 ? resolved.acquisition.deadTimeS : null,
-    countingTimeS: resolved.acquisition.dwellS * resolved.acquisition.sweeps,
-  }], { knownLine: nearestLine });
+  const region = simulatedRegion(resolved, kineticEnergiesEv.map(round9), counts);
+  const result = measureWorkFunction([region], { knownLine: nearestLine });
   const estimates = FITTED_QUANTITIES.flatMap((quantity) => {
     const name = `fit.${quantity}` as const;
     return [
@@ -124,6 +110,38 @@ function fitted(
     "fit.verdict": result.verdict,
     "fit.reasons": result.reasons.join("; "),
     ...Object.fromEntries(estimates),
+  };
+}
+
+/**
+ * Simulated counts as a fit takes them, with what the file of `simulate` would say of them.
+ *
+ * @param resolved The scenario.
+ * @param energiesEv Channels, kinetic energy as recorded, eV.
+ * @param counts Counts, same shape.
+ * @returns The region.
+ */
+export function simulatedRegion(
+  resolved: ResolvedScenario,
+  energiesEv: Float64Array,
+  counts: Float64Array,
+): EdgeRegion {
+  const { deadTimeS, dwellS, sweeps } = resolved.acquisition;
+  return {
+    label: "",
+    file: "simulated",
+    energyKind: "kinetic",
+    energiesEv,
+    counts,
+    photonEnergyEv: resolved.photonEnergyEv,
+    biasV: resolved.biasV,
+    asRecorded: true,
+    analyzerWorkFunctionEv: resolved.analyzerWorkFunctionEv,
+    acceptanceHalfAngleDeg: resolved.acceptanceHalfAngleDeg,
+    temperatureK: resolved.temperatureK,
+    resolutionFwhmEv: resolved.resolutionFwhmEv,
+    deadTimeS: deadTimeS > 0 ? deadTimeS : null,
+    countingTimeS: dwellS * sweeps,
   };
 }
 

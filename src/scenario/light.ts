@@ -1,3 +1,4 @@
+import { FWHM_PER_SIGMA } from "../math/mod.ts";
 import {
   anodeLight,
   bandLight,
@@ -28,7 +29,6 @@ export interface LightGroup {
 /** Photon energies that stand for a Gaussian band, and how far they reach in standard deviations. */
 const BAND_POINTS = 33;
 const BAND_REACH_SIGMAS = 4;
-const FWHM_PER_SIGMA = 2 * Math.sqrt(2 * Math.LN2);
 /** A continuous spectrum is cut into at most so many stretches of one absorption depth each, not narrower than this, eV. */
 const MOST_STRETCHES = 8;
 const STRETCH_EV = 0.25;

@@ -1,10 +1,8 @@
+import { helmholtzDipoleEv, schottkyLoweringEv } from "../emission/mod.ts";
 import type { ResolvedSurfacePart } from "./resolve.ts";
 import type { SurfaceSettings } from "./types.ts";
 
-/** `e / epsilon_0` times 1 debye per nm^2, V: e N mu / epsilon_0 for N = 1/nm^2 and mu = 1 D (CODATA 2022, 1 D = 3.33564e-30 C m). */
-const HELMHOLTZ_EV_PER_DEBYE_PER_NM2 = 0.376730314;
-/** `sqrt(e^3 / (4 pi epsilon_0))` in eV / sqrt(V/m). */
-const SCHOTTKY_EV = 3.79468648e-5;
+const NM2_PER_M2 = 1e18;
 
 /** A Gaussian spread is followed out to this many standard deviations. */
 const SPREAD_REACH = 3;
@@ -31,8 +29,9 @@ export function surfaceParts(
   workFunctionEv: number,
   resolutionFwhmEv: number,
 ): { parts: readonly ResolvedSurfacePart[]; meanWorkFunctionEv: number } {
-  const shift = HELMHOLTZ_EV_PER_DEBYE_PER_NM2 * surface.dipoleDensityPerNm2 * surface.dipoleMomentDebye -
-    SCHOTTKY_EV * Math.sqrt(surface.extractionFieldVPerM);
+  const { dipoleDensityPerNm2, dipoleMomentDebye, extractionFieldVPerM } = surface;
+  const shift = helmholtzDipoleEv(NM2_PER_M2 * dipoleDensityPerNm2, dipoleMomentDebye) -
+    schottkyLoweringEv(extractionFieldVPerM);
   const patches = (surface.patches.length > 0 ? surface.patches : [{ areaFraction: 1, workFunctionEv }]).map(
     (patch) => ({ share: patch.areaFraction, workFunctionEv: patch.workFunctionEv + shift }),
   );

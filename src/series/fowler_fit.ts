@@ -1,7 +1,7 @@
 import { cannot, type Estimate } from "../base/mod.ts";
 import { fowlerYieldEv2 } from "../emission/mod.ts";
 import { correlation, minimize } from "../fit/mod.ts";
-import { gaussLegendre, normalPdf } from "../math/mod.ts";
+import { FWHM_PER_SIGMA, gaussLegendre, normalPdf } from "../math/mod.ts";
 import { judgeFit, type Judgment } from "./judgment.ts";
 
 /** Yield against photon energy. */
@@ -36,7 +36,7 @@ export interface FowlerFit extends Judgment {
 const FOWLER_REACH_EV = 1.5;
 const BAND_RULE = gaussLegendre(24);
 const BAND_REACH_SIGMAS = 5;
-const SIGMAS_PER_FWHM = 1 / (2 * Math.sqrt(2 * Math.LN2));
+const SIGMAS_PER_FWHM = 1 / FWHM_PER_SIGMA;
 
 /**
  * Work function of a metal from its photoelectric yield near threshold at a known temperature.

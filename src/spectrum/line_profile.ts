@@ -1,5 +1,5 @@
 import { cannot } from "../base/mod.ts";
-import { gaussLegendre } from "../math/mod.ts";
+import { FWHM_PER_SIGMA, gaussLegendre } from "../math/mod.ts";
 
 /** Shape of a core-level line. */
 export interface LineShape {
@@ -11,7 +11,6 @@ export interface LineShape {
   readonly asymmetry: number;
 }
 
-const FWHM_PER_SIGMA = 2 * Math.sqrt(2 * Math.LN2);
 const LARGEST_ASYMMETRY = 0.49;
 
 /** From this distance on, in standard deviations of the Gaussian, the tail series is exact to 1e-10 of the maximum. */

@@ -1,11 +1,6 @@
 import assert from "node:assert/strict";
-import {
-  applyResponse,
-  FWHM_PER_SIGMA,
-  hemisphereResolutionEv,
-  responseMatrix,
-  windowEv,
-} from "../../src/instrument/mod.ts";
+import { applyResponse, hemisphereResolutionEv, responseMatrix, windowEv } from "../../src/instrument/mod.ts";
+import { FWHM_PER_SIGMA } from "../../src/math/mod.ts";
 import { assertClose } from "../support/assert_close.ts";
 import { crossing, gaussian, integrate } from "../support/integrate.ts";
 
